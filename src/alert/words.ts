@@ -1,0 +1,37 @@
+/** Numbers as people read them: shares in percent, differences in points, p as odds. */
+
+/** A share 0..1 in percent: one decimal, or one significant digit below one percent. */
+export function percent(share: number): string {
+  return `${digits(Math.abs(share) * 100)} %`;
+}
+
+/** A difference of shares, signed, in percentage points. */
+export function points(difference: number): string {
+  const sign = difference < 0 ? '-' : '+';
+  return `${sign}${digits(Math.abs(difference) * 100)} points`;
+}
+
+/**
+ * How often chance alone would show as much, from a natural log of p: "once in 4,000 windows".
+ * Never says "never".
+ */
+export function chance(logP: number): string {
+  const exponent = -logP / Math.LN10;
+  if (exponent >= 9) return 'less than once in a billion windows';
+  const times = Math.max(1, Math.exp(-logP));
+  if (times < 10) return `about once in ${times.toFixed(0)} windows`;
+  const scale = 10 ** Math.floor(Math.log10(times));
+  return `about once in ${grouped(Math.round(times / scale) * scale)} windows`;
+}
+
+/** Whole numbers with a comma between thousands. */
+export function grouped(n: number): string {
+  return String(Math.round(n)).replace(/\B(?=(\d{3})+$)/g, ',');
+}
+
+function digits(value: number): string {
+  if (value === 0) return '0';
+  if (value < 0.01) return 'under 0.01';
+  if (value < 1) return String(Number(value.toPrecision(1)));
+  return String(Number(value.toFixed(1)));
+}

@@ -1,0 +1,180 @@
+import type { Collector } from '../collect/collector.js';
+import type { Config } from '../config/types.js';
+import { Rounds } from '../schedule/rounds.js';
+import { closeDigests } from '../send/digest.js';
+import { deliverDue } from '../send/outbox.js';
+import { postOverHttp } from '../send/post.js';
+import { createMetrics, type Metrics } from '../serve/metrics.js';
+import type { ServerSources } from '../serve/server.js';
+import { lockStore, type StoreLock } from '../store/sqlite/lock.js';
+import { openSqliteStore } from '../store/sqlite/open.js';
+import type { Store } from '../store/store.js';
+import type { RoundCommit } from '../terms/round.js';
+import { collectorsOf } from './collectors.js';
+import { Engine } from './engine.js';
+import { Journal } from './journal.js';
+import { breathe, type Ports, printLine } from './ports.js';
+import { progress, type Progress } from './progress.js';
+import { daemonSources } from './sources.js';
+import { programVersion } from './version.js';
+
+export interface DaemonOptions {
+  readonly config: Config;
+  readonly mode: 'live' | 'once';
+  readonly ports: Ports;
+  /** Tell of alerts only, not of every window that is not steady. */
+  readonly alertsOnly: boolean;
+}
+
+interface Parts {
+  readonly lock: StoreLock;
+  readonly store: Store;
+  readonly rounds: Rounds;
+  readonly collectors: readonly Collector[];
+}
+
+/** Puts collecting, judging, sending and telling together over one store. */
+export class Daemon {
+  readonly metrics: Metrics = createMetrics();
+  private readonly options: DaemonOptions;
+  private readonly parts: Parts;
+  private readonly engine: Engine;
+  private readonly journal: Journal;
+  private readonly progress: Progress;
+  private beating: Promise<void> | null = null;
+  private delivering: Promise<void> | null = null;
+  private caughtUp = false;
+  private lastRoundMs: number | null = null;
+
+  private constructor(options: DaemonOptions, parts: Parts) {
+    this.options = options;
+    this.parts = parts;
+    this.journal = new Journal(options.ports, options.alertsOnly);
+    this.progress = progress(options.ports, parts.collectors);
+    this.engine = new Engine({
+      ...parts,
+      clock: options.ports.clock,
+      whole: false,
+      onRound: (round, durationMs) => this.onRound(round, durationMs),
+    });
+  }
+
+  /** Takes the store for itself; a second daemon on the same store is refused. */
+  static async open(options: DaemonOptions): Promise<Daemon> {
+    const { config, mode, ports } = options;
+    const lock = lockStore(config.store);
+    try {
+      const store = await openSqliteStore({ path: config.store });
+      const version = programVersion();
+      const rounds = await Rounds.load({ config, store, clock: ports.clock, version });
+      const collectors = await collectorsOf(config, {
+        mode,
+        clock: ports.clock,
+        store,
+        rounds,
+        stdin: ports.stdin,
+      });
+      return new Daemon(options, { lock, store, rounds, collectors });
+    } catch (error) {
+      lock.release();
+      throw error;
+    }
+  }
+
+  /** What the HTTP server may ask. */
+  sources(): ServerSources {
+    return daemonSources({
+      config: this.options.config,
+      store: this.parts.store,
+      collectors: this.parts.collectors,
+      clock: this.options.ports.clock,
+      state: () => ({ lastRoundMs: this.lastRoundMs, caughtUp: this.caughtUp }),
+    });
+  }
+
+  /** Everything that is there now: read, judged, told, sent once. */
+  async runOnce(): Promise<void> {
+    await this.catchUp();
+    this.progress.end();
+    await this.closeDigests();
+    await this.deliver();
+    this.journal.summary(this.options.ports.clock.nowMs());
+  }
+
+  /** One heartbeat: does nothing while the last one is still at work. */
+  async beat(): Promise<void> {
+    if (this.beating !== null) return;
+    this.beating = this.work();
+    try {
+      await this.beating;
+    } finally {
+      this.beating = null;
+    }
+  }
+
+  async close(): Promise<void> {
+    await this.beating;
+    await this.delivering;
+    for (const collector of this.parts.collectors) await collector.close();
+    await this.parts.store.close();
+    this.parts.lock.release();
+  }
+
+  private async work(): Promise<void> {
+    await this.catchUp();
+    this.progress.end();
+    await this.closeDigests();
+    this.caughtUp = true;
+    this.delivering ??= this.deliver().finally(() => {
+      this.delivering = null;
+    });
+    this.journal.everyMinute(this.options.ports.clock.nowMs());
+  }
+
+  private async catchUp(): Promise<void> {
+    for (let busy = true; busy;) {
+      const pass = await this.engine.pass();
+      this.progress.add(pass.bytes);
+      busy = pass.bytes > 0 || pass.rounds > 0;
+      await breathe();
+    }
+    this.tellProblems();
+  }
+
+  /** Never beside a round: it takes all waiting entries of a sender at once. */
+  private async closeDigests(): Promise<void> {
+    const { config, ports } = this.options;
+    await closeDigests({
+      store: this.parts.store,
+      senders: config.send,
+      clock: ports.clock,
+      caughtUp: !this.caughtUp,
+    });
+  }
+
+  private async deliver(): Promise<void> {
+    const { config, ports } = this.options;
+    await deliverDue({
+      store: this.parts.store,
+      senders: config.send,
+      source: `urn:tallyward:${config.store}`,
+      clock: ports.clock,
+      post: postOverHttp,
+      random: ports.random,
+    });
+  }
+
+  private onRound(round: RoundCommit, durationMs: number): void {
+    this.metrics.observeRound(durationMs);
+    this.lastRoundMs = this.options.ports.clock.nowMs();
+    this.progress.end();
+    this.journal.round(round);
+  }
+
+  private tellProblems(): void {
+    const problems = this.parts.collectors.flatMap((collector) => collector.problems());
+    for (const problem of this.journal.newProblems(problems)) {
+      printLine(this.options.ports.stderr, problem);
+    }
+  }
+}

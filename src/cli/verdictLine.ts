@@ -1,0 +1,13 @@
+import { placeName } from '../alert/sentence.js';
+import { grouped } from '../alert/words.js';
+import { formatInstant } from '../clock/format.js';
+import type { Verdict } from '../terms/verdict.js';
+
+/** One verdict as one line for a person. */
+export function verdictLine(verdict: Verdict): string {
+  const { startMs, endMs } = verdict.window;
+  const span = `${formatInstant(startMs)} to ${formatInstant(endMs)}`;
+  const place = placeName(verdict.mix, verdict.strand);
+  const events = `${grouped(verdict.events)} events`;
+  return `${span}  ${verdict.verdict}  ${place}  ${events}: ${verdict.reason}`;
+}

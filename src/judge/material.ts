@@ -1,0 +1,219 @@
+import type { Calendar } from '../clock/calendar.js';
+import type { MixConfig } from '../config/types.js';
+import type { Recipe } from '../terms/recipe.js';
+import type { Counts } from '../terms/tally.js';
+import type { Window } from '../terms/window.js';
+import type { Bins } from './bins.js';
+import { binsByMargins, binsByShares, binsKey } from './bins.js';
+import type { Learning, Reference, WindowCounts } from './reference.js';
+import {
+  baselineReference,
+  declaredReference,
+  fileReference,
+  previousReference,
+  seasonReference,
+} from './reference.js';
+
+/** What a window will be held against, before its bins are known. */
+export interface Material {
+  /** Counts of the reference by category, or the declared shares. */
+  readonly before: Counts;
+  readonly declared: boolean;
+  bins(now: Counts): Bins;
+  reference(bins: Bins): Reference | Learning;
+}
+
+/** Windows of the recipe that may serve: whole, inside it, outside alarms, not thin. */
+export function usable(
+  windows: readonly WindowCounts[],
+  recipe: Recipe,
+  minEvents: number,
+): WindowCounts[] {
+  return windows.filter(
+    ({ window, counts }) =>
+      window.startMs >= recipe.fromMs &&
+      window.endMs <= recipe.toMs &&
+      !recipe.excluded.some((e) => window.startMs < e.toMs && window.endMs > e.fromMs) &&
+      total(counts) >= minEvents,
+  );
+}
+
+/**
+ * Makes the yardstick of a mix for one window from its usable past windows, in time order.
+ * Pure: the same windows give the same material.
+ */
+export function materialFor(
+  mix: MixConfig,
+  calendar: Calendar,
+  window: Window,
+  past: readonly WindowCounts[],
+): Material {
+  const { yardstick } = mix;
+  switch (yardstick.kind) {
+    case 'declared':
+      return declared(mix, yardstick, past);
+    case 'rolling':
+    case 'pinned':
+      return sampled(mix, merge(past), (bins) => baselineReference(past, bins));
+    case 'file': {
+      const before = merge(yardstick.windows.map((counts) => ({ counts })));
+      const asWindows = yardstick.windows.map((counts) => ({ window: NOWHERE, counts }));
+      return sampled(mix, before, (bins) =>
+        yardstick.windowed ? fromFile(asWindows, bins) : fileReference(before, past, bins),
+      );
+    }
+    case 'previous':
+      return previous(mix, past, yardstick.windows, null);
+    case 'season':
+      return season(mix, calendar, window, past);
+  }
+}
+
+/** The windows since a shift began, as a baseline of their own. */
+export function materialSince(mix: MixConfig, past: readonly WindowCounts[]): Material {
+  return sampled(mix, merge(past), (bins) => baselineReference(past, bins));
+}
+
+/** Windows of a counts file have no place on the time axis. */
+const NOWHERE: Window = { startMs: 0, endMs: 0 };
+
+function fromFile(windows: readonly WindowCounts[], bins: Bins): Reference | Learning {
+  const found = baselineReference(windows, bins);
+  if ('learning' in found) return found;
+  return { ...found, note: { ...found.note, fromMs: null, toMs: null } };
+}
+
+function declared(
+  mix: MixConfig,
+  yardstick: Extract<MixConfig['yardstick'], { kind: 'declared' }>,
+  past: readonly WindowCounts[],
+): Material {
+  const shares = declaredShares(yardstick);
+  return remembering({
+    before: shares,
+    declared: true,
+    bins: (now) => binsByShares(now, shares, optionsOf(mix)),
+    reference: (bins) => declaredReference(shares, past, bins),
+  });
+}
+
+/**
+ * What the declaration leaves out is `(rest)`. Where no share is declared for it, it may hold half
+ * a unit of the last digit written: the declaration cannot tell less than that from nothing.
+ */
+function declaredShares(
+  yardstick: Extract<MixConfig['yardstick'], { kind: 'declared' }>,
+): ReadonlyMap<string, number> {
+  const shares = new Map(yardstick.shares.map((s) => [s.category, s.share]));
+  if (shares.has('(rest)')) return shares;
+  const scale = 1 / (1 + yardstick.halfUnit);
+  const scaled = new Map([...shares].map(([category, share]) => [category, share * scale]));
+  return scaled.set('(rest)', yardstick.halfUnit * scale);
+}
+
+function previous(
+  mix: MixConfig,
+  past: readonly WindowCounts[],
+  n: number,
+  provisional: string | null,
+): Material {
+  const before = past.slice(-n);
+  const yardstick = mix.yardstick.kind === 'season' ? 'season' : 'previous';
+  return sampled(mix, merge(before), (bins) =>
+    before.length < n
+      ? { learning: `${String(before.length)} of ${String(n)} previous windows so far` }
+      : previousReference(before, past, bins, { yardstick, provisional }),
+  );
+}
+
+function season(
+  mix: MixConfig,
+  calendar: Calendar,
+  window: Window,
+  past: readonly WindowCounts[],
+): Material {
+  const { yardstick } = mix;
+  if (yardstick.kind !== 'season') throw new RangeError('season: the mix has another yardstick');
+  const weekStarts = mix.window.kind === 'week' ? mix.window.weekStarts : 'monday';
+  const slotOf = (w: Window): string => calendar.slot(w.startMs, yardstick.cycle, weekStarts);
+  const except = new Set(yardstick.except);
+  const slots = new Map<string, WindowCounts[]>();
+  for (const w of past) {
+    const date = calendar.localDate(w.window.startMs);
+    if (except.has(date)) continue;
+    const slot = slots.get(slotOf(w.window)) ?? [];
+    slots.set(slotOf(w.window), slot);
+    const last = slot.at(-1);
+    // A repeated local hour is one slot: its windows are pooled.
+    if (last !== undefined && calendar.localDate(last.window.startMs) === date) {
+      slot[slot.length - 1] = pool(last, w);
+    } else slot.push(w);
+  }
+  const kept = [...slots.values()].map((slot) => slot.slice(-yardstick.keep));
+  const own = (slots.get(slotOf(window)) ?? []).slice(-yardstick.keep);
+  if (own.length < 2) {
+    return previous(mix, past, 1, 'fewer than two earlier cycles; held against the window before');
+  }
+  return sampled(mix, merge(own), (bins) => seasonReference(own, kept, bins));
+}
+
+function pool(a: WindowCounts, b: WindowCounts): WindowCounts {
+  return {
+    window: { startMs: a.window.startMs, endMs: b.window.endMs },
+    counts: merge([a, b]),
+  };
+}
+
+function sampled(
+  mix: MixConfig,
+  before: Counts,
+  reference: (bins: Bins) => Reference | Learning,
+): Material {
+  return remembering({
+    before,
+    declared: false,
+    bins: (now) => binsByMargins(now, before, optionsOf(mix)),
+    reference,
+  });
+}
+
+/** Most ways of gathering whose reference is remembered: neighbouring windows share one or two. */
+const REMEMBERED = 4;
+
+/** Working out a reference again for the same bins gives the same, so it is done once. */
+function remembering(material: Material): Material {
+  const known = new Map<string, Reference | Learning>();
+  return {
+    ...material,
+    reference: (bins) => {
+      const key = binsKey(bins);
+      const found = known.get(key) ?? material.reference(bins);
+      if (known.size >= REMEMBERED) known.clear();
+      known.set(key, found);
+      return found;
+    },
+  };
+}
+
+function optionsOf(mix: MixConfig): {
+  ordered: readonly string[] | null;
+  categoriesJudged: number;
+  pooling: true;
+} {
+  return { ordered: mix.ordered, categoriesJudged: mix.limits.categoriesJudged, pooling: true };
+}
+
+/** Sum over windows, categories in code-point order. */
+export function merge(windows: readonly { readonly counts: Counts }[]): Counts {
+  const sums = new Map<string, number>();
+  for (const { counts } of windows) {
+    for (const [category, n] of counts) sums.set(category, (sums.get(category) ?? 0) + n);
+  }
+  return new Map([...sums].sort(([a], [b]) => (a < b ? -1 : 1)));
+}
+
+export function total(counts: Counts): number {
+  let n = 0;
+  for (const count of counts.values()) n += count;
+  return n;
+}

@@ -1,0 +1,183 @@
+import { type BudgetShare } from '../alert/budget.js';
+import { decideFamily, type FamilyOutcome } from '../alert/decideFamily.js';
+import { SINCE_WINDOWS, sinceWhen } from '../alert/since.js';
+import type { SenderConfig } from '../config/types.js';
+import { binCounts } from '../judge/bins.js';
+import { total } from '../judge/material.js';
+import type { Alert, Since } from '../terms/alert.js';
+import type { StrandMemory } from '../terms/recipe.js';
+import type { FamilyNote, RoundCommit } from '../terms/round.js';
+import type { StrandKey } from '../terms/tally.js';
+import type { Verdict } from '../terms/verdict.js';
+import { conclude, type Conclusion, type Decision, familyTest, raises } from './conclude.js';
+import { type Examined, examine, type Subject } from './examine.js';
+import { type News, outgoing } from './outgoing.js';
+import type { Past } from './past.js';
+
+/** Everything that judging one batch depends on. */
+export interface BatchInput {
+  readonly endMs: number;
+  readonly number: number;
+  readonly mixes: readonly string[];
+  /** In order of mix (as configured), then strand key. */
+  readonly subjects: readonly Subject[];
+  readonly forgotten: readonly { readonly mix: string; readonly strand: StrandKey }[];
+  readonly shares: readonly BudgetShare[];
+  /** Strands of the instant judged in earlier batches or still to come, by budget. */
+  readonly elsewhere: ReadonlyMap<string, number>;
+  /** Strands alive, by budget. */
+  readonly active: ReadonlyMap<string, number>;
+  /** Alerts that are not in state normal, by id. */
+  readonly alerts: ReadonlyMap<string, Alert>;
+  /** Alerts closed because their strand was forgotten, already ended. */
+  readonly closed: readonly Alert[];
+  readonly past: Past;
+  readonly nowMs: number;
+  readonly senders: readonly SenderConfig[];
+  readonly configDigest: string;
+  readonly version: string;
+}
+
+/** Judges all strands of a batch as one family and gives everything the round leaves behind. */
+export async function judgeBatch(input: BatchInput): Promise<RoundCommit> {
+  const examined: Examined[] = [];
+  for (const subject of input.subjects) examined.push(await examine(subject, input.past));
+  const { decisions, families } = decide(examined, input);
+  const conclusions: Conclusion[] = [];
+  for (const one of examined) {
+    const decision = decisions.get(one) ?? null;
+    const since = raises(one, decision) ? await findSince(one, input.past) : null;
+    conclusions.push(conclude({ examined: one, decision, since, alerts: input.alerts }));
+  }
+  return assemble(input, examined, conclusions, families);
+}
+
+function decide(
+  examined: readonly Examined[],
+  input: BatchInput,
+): { decisions: Map<Examined, Decision>; families: FamilyNote[] } {
+  const decisions = new Map<Examined, Decision>();
+  const families: FamilyNote[] = [];
+  for (const share of input.shares) {
+    const members = examined.filter(
+      (one) => familyTest(one) !== null && share.roundsPerWeek.has(one.subject.plan.mix.name),
+    );
+    const outcome = decideShare(share, members, input);
+    members.forEach((one, at) => {
+      const decision = outcome.decisions[at];
+      if (decision !== undefined) decisions.set(one, decision);
+    });
+    if (input.mixes.some((mix) => share.roundsPerWeek.has(mix))) families.push(outcome.note);
+  }
+  return { decisions, families };
+}
+
+function decideShare(
+  share: BudgetShare,
+  members: readonly Examined[],
+  input: BatchInput,
+): FamilyOutcome {
+  const tests = members.map((one) => ({
+    mix: one.subject.plan.mix.name,
+    logP: familyTest(one)?.tested.evidence.logP ?? 0,
+  }));
+  return decideFamily(share, tests, {
+    elsewhere: input.elsewhere.get(share.budget) ?? 0,
+    active: input.active.get(share.budget) ?? 0,
+  });
+}
+
+/** Looks for the start of a shift in the strand's last windows, back to its last alarm's end. */
+async function findSince(examined: Examined, past: Past): Promise<Since> {
+  const { subject, memory } = examined;
+  const { plan, strand, window } = subject;
+  const test = familyTest(examined);
+  if (test === null) throw new RangeError('only a tested window has a start to look for');
+  const { reference, bins } = test;
+  const { fromMs, toMs, yardstick } = reference.note;
+  // The slots of a season lie apart: what stands between them is no part of the reference.
+  const unbroken = yardstick === 'baseline' || yardstick === 'previous';
+  // What differs from the reference began in it or after it; what was before is another matter.
+  const referenceStartMs = yardstick === 'baseline' ? (fromMs ?? -Infinity) : -Infinity;
+  const earliestMs = Math.max(memory.alarm?.endMs ?? lastEndMs(memory), referenceStartMs);
+  let first = window;
+  for (let at = 1; at < SINCE_WINDOWS; at++) {
+    const before = plan.calendar.previous(first);
+    if (before.startMs < earliestMs) break;
+    first = before;
+  }
+  const windows = await past.windows(plan.mix.name, strand, first.startMs, window.endMs);
+  return sinceWhen({
+    windows: windows
+      .filter((w) => total(w.counts) > 0)
+      .map((w) => ({
+        window: w.window,
+        counts: binCounts(w.counts, bins),
+        inReference:
+          unbroken &&
+          fromMs !== null &&
+          toMs !== null &&
+          w.window.startMs >= fromMs &&
+          w.window.endMs <= toMs,
+      })),
+    shares: reference.shares,
+    weight: reference.weight,
+    rho: reference.rho,
+  });
+}
+
+/** End of the strand's last alarm, or the beginning of its present mix. */
+function lastEndMs(memory: StrandMemory): number {
+  return Math.max(memory.epochMs, ...memory.excluded.map((span) => span.toMs));
+}
+
+function assemble(
+  input: BatchInput,
+  examined: readonly Examined[],
+  conclusions: readonly Conclusion[],
+  families: readonly FamilyNote[],
+): RoundCommit {
+  const changes = conclusions.flatMap((c) => c.changes);
+  const closed = input.closed.map((alert) => ({ alert, tell: 'returned' }) as const);
+  const news = [...closed, ...changes].flatMap(({ alert, tell }): News[] =>
+    tell === null ? [] : [{ alert, event: tell }],
+  );
+  const judgeableMs = new Map(
+    examined.map(({ subject: { plan, window } }) => [
+      plan.mix.name,
+      window.endMs + plan.mix.latenessMs,
+    ]),
+  );
+  return {
+    batch: { endMs: input.endMs, number: input.number, mixes: input.mixes, families },
+    verdicts: examined.map((one, at) => verdictOf(input, one, conclusions[at])),
+    strands: examined.map(({ subject }, at) => ({
+      mix: subject.plan.mix.name,
+      strand: subject.strand,
+      state: conclusions[at]?.memory ?? subject.memory,
+    })),
+    forgotten: input.forgotten,
+    alerts: [...input.closed, ...changes.map((change) => change.alert)],
+    ...outgoing(news, input.senders, { nowMs: input.nowMs, judgeableMs }),
+  };
+}
+
+function verdictOf(
+  input: BatchInput,
+  examined: Examined,
+  conclusion: Conclusion | undefined,
+): Verdict {
+  const { subject } = examined;
+  if (conclusion === undefined) throw new RangeError('a window was left without a conclusion');
+  return {
+    mix: subject.plan.mix.name,
+    strand: subject.strand,
+    window: subject.window,
+    verdict: conclusion.verdict,
+    events: total(subject.counts),
+    reason: conclusion.reason,
+    evidence: conclusion.evidence,
+    configDigest: input.configDigest,
+    version: input.version,
+  };
+}
