@@ -134,7 +134,7 @@ CREATE TABLE messages (
   last_error TEXT
 ) STRICT;
 
-CREATE INDEX messages_due ON messages (next_attempt_ms) WHERE state = 'due';
+CREATE INDEX messages_due ON messages (sender, created_at_ms, sequence) WHERE state = 'due';
 
 CREATE TABLE digest_entries (
   sequence INTEGER PRIMARY KEY,

@@ -141,7 +141,6 @@ export class Daemon {
     this.tellProblems();
   }
 
-  /** Never beside a round: it takes all waiting entries of a sender at once. */
   private async closeDigests(): Promise<void> {
     const { config, ports } = this.options;
     await closeDigests({

@@ -71,7 +71,7 @@ export function calendarOf(length: WindowLength, zoneName: string): Calendar {
 }
 
 /** Length of a window in ordinary times, ms; the mean one for months. */
-export function nominalMsOf(length: WindowLength): number {
+function nominalMsOf(length: WindowLength): number {
   switch (length.kind) {
     case 'sub-day':
       return length.ms;

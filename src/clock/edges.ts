@@ -20,7 +20,7 @@ export interface Edges {
  * hour that the clocks repeat has its windows twice. Where the clocks jump by less than the length
  * (half an hour in Lord Howe), or at an odd minute, one window is longer or shorter instead.
  */
-export function wallClockEdges(stepMs: number, zone: Zone): Edges {
+function wallClockEdges(stepMs: number, zone: Zone): Edges {
   return {
     floor: (ms) => lastMultiple(zone, stepMs, ms),
     ceil: (ms) => firstMultipleAfter(zone, stepMs, ms),
@@ -57,7 +57,7 @@ function firstMultipleAfter(zone: Zone, stepMs: number, ms: number): number {
  * that holds a change is longer or shorter, and one whose whole local span is skipped (30 December
  * 2011 in Apia) does not exist.
  */
-export function firstReachedEdges(buckets: Buckets, zone: Zone): Edges {
+function firstReachedEdges(buckets: Buckets, zone: Zone): Edges {
   const bucketAt = (ms: number): number => buckets.floor(furthestLocal(zone, ms));
   return {
     floor: (ms) => firstReached(zone, bucketAt(ms)),

@@ -11,8 +11,8 @@ const NUMBER = /^([+-]?)(\d{1,40})(?:\.(\d{0,40}))?(?:[eE]([+-]?\d{1,3}))?$/;
 /**
  * Reads a count since 1970-01-01T00:00:00Z, with or without fraction or exponent, rounded down to a
  * millisecond. The point is moved in the text, so no digit is lost to floating point: nanoseconds
- * have 19 digits. null for anything else, and for
- * times further from 1970 than the end of the year 9999.
+ * have 19 digits. null for anything else, and for times further from
+ * 1970 than the end of the year 9999.
  */
 export function epochParser(unit: EpochUnit): (text: string) => number | null {
   const shift = SHIFT[unit];

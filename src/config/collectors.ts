@@ -4,21 +4,24 @@ import type { Context, Tell } from './resolve.js';
 import { LATER_SOURCES } from './schema.js';
 import type { CollectorSection } from './schema.js';
 import { hasKey } from './sections.js';
+import type { Section } from './sections.js';
 import type { Entry } from './tree.js';
 import type { CollectorConfig, DecodeConfig, SourceConfig } from './types.js';
 
 /** Longest line that is read, in bytes without its end. */
-export const MAX_LINE_BYTES = 1_048_576;
+const MAX_LINE_BYTES = 1_048_576;
 
 /** The resolved collector; null when something in it cannot stand, which is told. */
 export function resolveCollector(
   entry: Entry,
-  section: CollectorSection,
+  read: Section<CollectorSection>,
   context: Context,
 ): CollectorConfig | null {
-  const tell = teller(entry, context);
-  const source = sourceOf(entry, section, tell);
-  const decode = decodeOf(section, tell);
+  const tell = teller(entry, read, context);
+  const { data: section, failed } = read;
+  const unsure = (...keys: readonly string[]): boolean => keys.some((key) => failed.has(key));
+  const source = unsure('tail', 'stdin') ? null : sourceOf(entry, section, tell);
+  const decode = unsure('decode', 'pattern') ? null : decodeOf(section, tell);
   if (source === null || decode === null) return null;
   if (decode.kind === 'pattern') checkGroup(decode.pattern, section.time.field, ['time'], tell);
   return {

@@ -6,7 +6,7 @@ export interface FileCounts {
   readonly windowed: boolean;
 }
 
-export const MAX_COUNTS_BYTES = 16 * 1_048_576;
+const MAX_COUNTS_BYTES = 16 * 1_048_576;
 
 /**
  * Reads CSV (RFC 4180) with the header `category,count` or `category,count,window`. Windows stand

@@ -121,7 +121,7 @@ export interface Percent {
 }
 
 /** Reads `92%` or `0.5%`, from 0 to 100 with at most 9 decimals. */
-export function readPercent(text: string): Read<Percent> {
+function readPercent(text: string): Read<Percent> {
   const parts = /^(\d{1,3})(?:\.(\d{1,9}))? ?%$/.exec(text);
   if (parts === null) {
     const bare = /^\d*\.?\d+$/.test(text);

@@ -2,14 +2,17 @@ import { checkGroup } from './collectors.js';
 import { nearest } from './problems.js';
 import { categoryProblem, presentKeys, teller } from './resolve.js';
 import type { Context, Tell } from './resolve.js';
+import { LATER_YARDSTICKS } from './schema.js';
 import type { MixSection } from './schema.js';
+import { find, hasKey } from './sections.js';
+import type { Section } from './sections.js';
 import type { Entry } from './tree.js';
 import type { CollectorConfig, MixConfig, WhereConfig } from './types.js';
 import { nominalMs, toWindowLength } from './windowLength.js';
 import { resolveYardstick } from './yardstick.js';
 
 /** Categories kept in the store; those past the judged ones are for looking up only. */
-export const STORED_CATEGORIES = 10_000;
+const STORED_CATEGORIES = 10_000;
 /** Fewest windows without events before a strand is forgotten. */
 const FORGET_WINDOWS = 24;
 
@@ -22,18 +25,20 @@ export interface Known {
 /** The resolved mix; null when something in it cannot stand, which is told. */
 export function resolveMix(
   entry: Entry,
-  section: MixSection,
+  read: Section<MixSection>,
   known: Known,
   context: Context,
 ): MixConfig | null {
-  const tell = teller(entry, context);
+  const tell = teller(entry, read, context);
+  const section = read.data;
   const window = toWindowLength(section.window, section.week_starts);
   const { zone } = section;
   checkFrom(section, known, tell);
   checkFields(section, known, tell);
   checkCategories(section, tell);
+  const later = hasKey(find(entry, ['yardstick']).tree, LATER_YARDSTICKS);
   const yardstick = resolveYardstick(section.yardstick, {
-    ...{ mix: entry.key, window, zone, tell, context },
+    ...{ mix: entry.key, window, zone, tell, later, context },
   });
   const where = section.where.map((condition, at) => resolveWhere(condition, at, tell));
   if (yardstick === null) return null;

@@ -11,6 +11,7 @@ import type { Context } from './resolve.js';
 import { configSchema, laterKeys } from './schema.js';
 import type { ConfigSchema, SenderSection } from './schema.js';
 import { readSection, tellUnknown } from './sections.js';
+import type { Section } from './sections.js';
 import { readTree } from './tree.js';
 import type { Entry, Tree } from './tree.js';
 import type { CollectorConfig, Config, ConfigProblem, SenderConfig } from './types.js';
@@ -44,7 +45,7 @@ export function readConfig(input: ConfigInput): ConfigResult {
 }
 
 /** `sha256:` and the hex digest of the text's UTF-8 bytes. */
-export function configDigest(text: string): string {
+function configDigest(text: string): string {
   return `sha256:${createHash('sha256').update(text, 'utf8').digest('hex')}`;
 }
 
@@ -55,16 +56,16 @@ function resolve(tree: Tree, input: ConfigInput, problems: Problems): Config | n
   }
   const schema = configSchema(input.time);
   const context = { time: input.time, problems, readText: input.readText, notes: [] as string[] };
-  const settings = readSettings(tree, schema, problems);
+  const settings = readSettings(tree, schema, problems)?.data;
   const collectors = resolveCollectors(tree, schema, context);
   const mixes = readNamed(tree, 'mixes', schema.mix, problems).flatMap(([entry, section]) => {
     const mix = section === null ? null : resolveMix(entry, section, collectors, context);
     return mix === null ? [] : [mix];
   });
   const send = readNamed(tree, 'send', schema.sender, problems).flatMap(([entry, section]) =>
-    section === null ? [] : [toSender(entry.key, section)],
+    section === null ? [] : [toSender(entry.key, section.data)],
   );
-  if (settings === null) return null;
+  if (settings === undefined) return null;
   return {
     file: input.file,
     text: input.text,
@@ -100,7 +101,7 @@ function readNamed<T>(
   key: 'collectors' | 'mixes' | 'send',
   schema: z.ZodType<T>,
   problems: Problems,
-): readonly (readonly [Entry, T | null])[] {
+): readonly (readonly [Entry, Section<T> | null])[] {
   const entry = tree.entries.find((inner) => inner.key === key);
   const required = key !== 'send';
   if (entry === undefined) {

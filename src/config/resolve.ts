@@ -15,8 +15,16 @@ export interface Context {
 /** Tells a problem at a path below the entry. */
 export type Tell = (path: readonly PropertyKey[], message: string) => void;
 
-export function teller(entry: Entry, context: Context): Tell {
-  return (path, message) => tellAt(entry, path, message, context.problems);
+/** Tells problems of an entry's section, but none of keys that only have stand-ins. */
+export function teller(
+  entry: Entry,
+  { failed }: { readonly failed: ReadonlySet<PropertyKey> },
+  context: Context,
+): Tell {
+  return (path, message) => {
+    const [key] = path;
+    if (key === undefined || !failed.has(key)) tellAt(entry, path, message, context.problems);
+  };
 }
 
 /** The keys of a section that the file has, in schema order. */

@@ -12,6 +12,8 @@ export const LATER_SOURCES: readonly string[] = [
   ...['push', 'syslog', 'otlp', 'sql', 'exec', 'nats', 'amqp', 'mqtt', 'kafka'],
 ];
 
+export const LATER_YARDSTICKS: readonly string[] = ['peers'];
+
 const DAY_MS = 86_400_000;
 const MAX_MS = 3_660 * DAY_MS;
 
@@ -124,7 +126,7 @@ function yardstickSection(time: TimeTools) {
         .optional()
         .describe('Shares by category, in per cent, with the sum 100%.'),
     },
-    ['peers'],
+    LATER_YARDSTICKS,
   );
 }
 
@@ -246,7 +248,6 @@ export function configSchema(time: TimeTools) {
 }
 
 export type ConfigSchema = ReturnType<typeof configSchema>;
-export type SettingsSection = z.output<ConfigSchema['settings']>;
 export type CollectorSection = z.output<ConfigSchema['collector']>;
 export type MixSection = z.output<ConfigSchema['mix']>;
 export type YardstickSection = MixSection['yardstick'];

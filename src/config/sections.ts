@@ -9,16 +9,34 @@ type Path = readonly PropertyKey[];
 /** Keys whose mappings are read as maps from category, so that order and odd names survive. */
 const CATEGORY_MAPS = ['declared', 'each'];
 
+/** A section that was read, perhaps with stand-ins. */
+export interface Section<T> {
+  readonly data: T;
+  /** Keys that could not be read; `data` has their default or example, so say nothing of them. */
+  readonly failed: ReadonlySet<PropertyKey>;
+}
+
 /**
- * Reads one section by its schema. Everything wrong in it goes to `problems`, each at its place.
- * null when a value could not be read; unknown keys alone do not keep the rest from being read.
+ * Reads one section by its schema. Everything wrong in it goes to `problems`, each at its place. So
+ * that checks across keys are made in the same run, keys that are wrong get stand-ins; null where
+ * that is not possible.
  */
-export function readSection<T>(schema: z.ZodType<T>, entry: Entry, problems: Problems): T | null {
+export function readSection<T>(
+  schema: z.ZodType<T>,
+  entry: Entry,
+  problems: Problems,
+): Section<T> | null {
   unknownKeys(schema, entry, problems);
-  const result = schema.safeParse(toPlain(entry.value));
-  if (result.success) return result.data;
+  const plain = toPlain(entry.value);
+  const result = schema.safeParse(plain);
+  if (result.success) return { data: result.data, failed: new Set() };
   for (const issue of result.error.issues) tell(issue, schema, entry, problems);
-  return null;
+  if (typeof plain !== 'object' || plain === null || entry.value.kind !== 'map') return null;
+  const failed = new Set(result.error.issues.flatMap(({ path }) => path.slice(0, 1)));
+  const kept = Object.entries(plain).filter(([key]) => !failed.has(key));
+  const examples = [...failed].map((key) => [String(key), exampleOf(schema, String(key))]);
+  const again = schema.safeParse(Object.fromEntries([...kept, ...examples]));
+  return again.success ? { data: again.data, failed } : null;
 }
 
 /** Texts, lists and objects as the schema takes them; an empty value is null. */
@@ -103,15 +121,20 @@ function tell(issue: z.core.$ZodIssue, schema: z.ZodType, entry: Entry, problems
   else tellType(issue.expected, found, problems);
 }
 
+/** The first example of a key's schema; required keys have one. */
+function exampleOf(schema: z.core.$ZodType, key: string): string | undefined {
+  const value = child(unwrap(schema), key);
+  const examples = value === undefined ? undefined : z.globalRegistry.get(value)?.examples;
+  return Array.isArray(examples) ? examples.map(String)[0] : undefined;
+}
+
 /** A missing key is not told where a key of a part to come may stand in its stead. */
 function tellMissing(path: Path, schema: z.ZodType, found: Found, problems: Problems): void {
   const section = at(schema, path.slice(0, -1));
   const later = section === null ? [] : (laterKeys.get(section)?.later ?? []);
   if (hasKey(found.tree, later)) return;
   const missing = String(path.at(-1));
-  const value = section === null ? undefined : child(section, missing);
-  const examples = value === undefined ? undefined : z.globalRegistry.get(value)?.examples;
-  const [example] = Array.isArray(examples) ? examples.map(String) : [];
+  const example = section === null ? undefined : exampleOf(section, missing);
   const write = example === undefined ? `${missing} and its value` : `${missing}: ${example}`;
   problems.add(found.place, `${missing} is missing in ${found.name}; write ${write}`);
 }

@@ -1,9 +1,10 @@
-import { LineCounter, isAlias, isMap, isScalar, isSeq, parseDocument } from 'yaml';
-import type { Document, Scalar, YAMLMap } from 'yaml';
+import { isAlias, isMap, isScalar, isSeq } from 'yaml';
+import type { Document, LineCounter, Scalar, YAMLMap } from 'yaml';
 import { fillEnvironment } from './environment.js';
 import type { Environment } from './environment.js';
 import { shown } from './problems.js';
 import type { Place, Problems } from './problems.js';
+import { MAX_DEPTH, parseYaml, tooDeep } from './yaml.js';
 
 /**
  * The file as texts with their places. Every scalar is its text as written, so that `00`, `0x10`
@@ -31,8 +32,7 @@ export interface Entry extends Place {
   readonly value: Tree;
 }
 
-export const MAX_CONFIG_BYTES = 1_048_576;
-const MAX_DEPTH = 16;
+const MAX_CONFIG_BYTES = 1_048_576;
 const MAX_ALIASES = 32;
 /** Nodes after aliases are followed. */
 const MAX_NODES = 50_000;
@@ -52,41 +52,15 @@ export function readTree(text: string, environment: Environment, problems: Probl
     problems.add({ line: 1, column: 1 }, 'the file is over 1 MiB; write a smaller one');
     return null;
   }
-  const lines = new LineCounter();
-  const document = parseYaml(text, lines);
-  if (tellErrors(document, lines, problems)) return null;
+  const parsed = parseYaml(text, problems);
+  if (parsed === null) return null;
+  const { document, lines } = parsed;
   if (document.contents === null) {
     problems.add({ line: 1, column: 1 }, 'the file is empty; write collectors and mixes');
     return null;
   }
   const reading = { document, lines, environment, problems, aliases: 0, nodes: 0 };
   return toTree(reading, document.contents, { line: 1, column: 1 }, 0);
-}
-
-const tooDeep = `the file is nested more than ${MAX_DEPTH} levels deep; write it flatter`;
-
-function parseYaml(text: string, lineCounter: LineCounter): Document {
-  return parseDocument(text, {
-    schema: 'failsafe',
-    // Repeated keys are told by `toEntries`, each at its place.
-    uniqueKeys: false,
-    prettyErrors: false,
-    logLevel: 'silent',
-    lineCounter,
-  });
-}
-
-/** Tells what the parser found; whether the document cannot be used. */
-function tellErrors(document: Document, lines: LineCounter, problems: Problems): boolean {
-  // The parser calls itself once a level: a hostile file runs out of stack.
-  const deep = document.errors.find(({ code }) => code === 'RESOURCE_EXHAUSTION');
-  for (const error of deep ? [deep] : [...document.errors, ...document.warnings]) {
-    const { line, col } = lines.linePos(error.pos[0]);
-    const what = error.code === 'MULTIPLE_DOCS' ? 'a second document begins' : error.message;
-    const message = `not valid YAML: ${oneLine(what)}; correct it here`;
-    problems.add({ line, column: col }, deep ? tooDeep : message);
-  }
-  return document.errors.length > 0;
 }
 
 /** `near` is the place of the key or list, used for values that have no place of their own. */
@@ -141,6 +115,13 @@ function followAlias(reading: Reading, name: string, place: Place, depth: number
     return { ...place, kind: 'empty' };
   }
   const target = anchored(reading.document, name);
+  if (target === null) {
+    reading.problems.add(
+      place,
+      `alias *${name} names nothing; write the value, or &${name} before`,
+    );
+    return { ...place, kind: 'empty' };
+  }
   const tree = toTree(reading, target, place, depth + 1);
   return tree.kind === 'empty' ? tree : { ...tree, ...place };
 }
@@ -162,8 +143,4 @@ function placeOf(reading: Reading, node: unknown): Place | null {
   if (node.range === undefined || node.range === null) return null;
   const { line, col } = reading.lines.linePos(node.range[0]);
   return { line, column: col };
-}
-
-function oneLine(text: string): string {
-  return text.replace(/\s+/g, ' ').replace(/;/g, ',').trim();
 }

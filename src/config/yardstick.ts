@@ -18,6 +18,8 @@ export interface Setting {
   readonly window: WindowLength;
   readonly zone: string;
   readonly tell: Tell;
+  /** A yardstick that is not built yet is written, and has been told. */
+  readonly later: boolean;
   readonly context: Context;
 }
 
@@ -29,6 +31,10 @@ export function resolveYardstick(
   const { baseline, previous, season, declared } = section;
   const { tell } = setting;
   const present = presentKeys(section);
+  if (present.length === 0 && !setting.later) {
+    const write = 'write one of baseline, previous, season, declared';
+    tell(['yardstick'], `has no key; ${write}`);
+  }
   if (present.length > 1) {
     tell(['yardstick'], `has both ${present.join(' and ')}; write one of them`);
     return null;

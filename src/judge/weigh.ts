@@ -24,7 +24,7 @@ export interface WeighInput {
 /** Columns of a table that an exact or sampled p may have; beyond it pooling is asked for. */
 const MOST_COLUMNS = 10_000;
 /** Steps that an exact p may take; about a second. */
-const MOST_WORK = 5e6;
+const MOST_WORK = 1e6;
 /** Tables drawn, and their seed, where an exact p is too much work and none was asked for. */
 const FALLBACK = { samples: 99_999, seed: 1 };
 

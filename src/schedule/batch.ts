@@ -106,7 +106,7 @@ async function findSince(examined: Examined, past: Past): Promise<Since> {
     if (before.startMs < earliestMs) break;
     first = before;
   }
-  const windows = await past.windows(plan.mix.name, strand, first.startMs, window.endMs);
+  const windows = await past.windows(plan, strand, first.startMs, window.endMs);
   return sinceWhen({
     windows: windows
       .filter((w) => total(w.counts) > 0)

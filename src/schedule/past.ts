@@ -27,15 +27,19 @@ export class Past {
     this.store = store;
   }
 
-  /** The windows of a strand with events on time, that begin in [fromMs, toMs), in order. */
+  /**
+   * The windows of a strand with events on time, that begin in [fromMs, toMs), in order. Windows
+   * of another length, from before the configuration was changed, are left out.
+   */
   async windows(
-    mix: string,
+    { mix, calendar }: MixPlan,
     strand: StrandKey,
     fromMs: number,
     toMs: number,
   ): Promise<WindowCounts[]> {
-    const tallies = await this.store.strandTallies(mix, strand, fromMs, toMs);
+    const tallies = await this.store.strandTallies(mix.name, strand, fromMs, toMs);
     return tallies
+      .filter(({ window }) => calendar.windowAt(window.startMs).endMs === window.endMs)
       .map((tally) => ({ window: tally.window, counts: onTime(tally) }))
       .filter(({ counts }) => counts.size > 0);
   }
@@ -56,7 +60,7 @@ export class Past {
       this.entries.set(place, known);
       return known.material ?? materialFor(mix, calendar, window, known.past);
     }
-    const windows = await this.windows(mix.name, strand, recipe.fromMs, recipe.toMs);
+    const windows = await this.windows(plan, strand, recipe.fromMs, recipe.toMs);
     const past = usable(windows, recipe, mix.limits.minEvents);
     const material = materialFor(mix, calendar, window, past);
     this.remember(place, { key, past, material: servesAStep(mix) ? material : null });
@@ -70,7 +74,7 @@ export class Past {
     fromMs: number,
     window: Window,
   ): Promise<Material> {
-    const windows = await this.windows(plan.mix.name, strand, fromMs, window.startMs);
+    const windows = await this.windows(plan, strand, fromMs, window.startMs);
     const recipe = { step: 0, fromMs, toMs: window.startMs, excluded: [] };
     return materialSince(plan.mix, usable(windows, recipe, plan.mix.limits.minEvents));
   }
@@ -89,7 +93,7 @@ export class Past {
     }
     const first = places.at(-1);
     if (first === undefined) return [];
-    const found = await this.windows(plan.mix.name, strand, first.startMs, last.endMs);
+    const found = await this.windows(plan, strand, first.startMs, last.endMs);
     const byStart = new Map(found.map((w) => [w.window.startMs, w.counts]));
     return places.reverse().map((w) => byStart.get(w.startMs) ?? NOTHING);
   }

@@ -145,7 +145,7 @@ export class Rounds {
     const { options, past, shares } = this;
     const gathered = [];
     for (const { plan, window } of members) {
-      const tallies = await this.tallies(plan.mix.name, window.startMs);
+      const tallies = await this.tallies(plan.mix.name, window);
       gathered.push(this.strands.subjects(plan, window, tallies));
     }
     const forgotten = gathered.flatMap((one) => one.forgotten);
@@ -168,9 +168,11 @@ export class Rounds {
     };
   }
 
-  private async tallies(mix: string, startMs: number): Promise<Map<StrandKey, Counts>> {
-    const tallies = await this.options.store.windowTallies(mix, startMs);
-    const counts = tallies.map((tally): [StrandKey, Counts] => [tally.strand, onTime(tally)]);
+  private async tallies(mix: string, window: Window): Promise<Map<StrandKey, Counts>> {
+    const tallies = await this.options.store.windowTallies(mix, window.startMs);
+    const counts = tallies
+      .filter((tally) => tally.window.endMs === window.endMs)
+      .map((tally): [StrandKey, Counts] => [tally.strand, onTime(tally)]);
     return new Map(counts.filter(([, categories]) => categories.size > 0));
   }
 

@@ -21,8 +21,7 @@ const readAtOnce = 200;
 
 /**
  * Puts the digests that are due into the outbox: `digestMs` after the first entry, or at once.
- * Call between rounds, never beside one: closing takes all entries of a sender away, and one that
- * a round commits between reading and closing would be lost.
+ * An entry that a round adds meanwhile waits for the next digest.
  *
  * @returns real time at which the next digest is due; null when no entry waits.
  * @throws StoreError when the store refuses.
@@ -37,7 +36,8 @@ export async function closeDigests(ports: DigestPorts): Promise<number | null> {
     const dueMs = first.createdAtMs + sender.digestMs;
     const nowMs = clock.nowMs();
     if (caughtUp || dueMs <= nowMs) {
-      await store.closeDigest(await digestMessage(sender, { entries, first, nowMs, store }));
+      const message = await digestMessage(sender, { entries, first, nowMs, store });
+      await store.closeDigest(message, entries.length);
     } else {
       nextMs = nextMs === null ? dueMs : Math.min(nextMs, dueMs);
     }

@@ -10,7 +10,7 @@ import { sendWebhook } from './webhook.js';
 
 export type OutboxStore = Pick<
   Store,
-  'dueDeliveries' | 'delivered' | 'deliveryFailed' | 'deliveryGivenUp'
+  'waitingSenders' | 'waiting' | 'delivered' | 'deliveryFailed' | 'deliveryGivenUp'
 >;
 
 export interface OutboxPorts {

@@ -106,17 +106,18 @@ export interface Store {
   configText(digest: string): Promise<string | null>;
 
   // Outbox -------------------------------------------------------------------------------------
-  /** Messages whose next attempt is due, oldest first, at most `limit`. */
-  dueDeliveries(nowMs: number, limit: number): Promise<readonly Delivery[]>;
-  /** Time of the earliest next attempt; null when the outbox is empty. */
-  nextDeliveryMs(): Promise<number | null>;
+  /** Senders for which messages wait, in order of name. */
+  waitingSenders(): Promise<readonly string[]>;
+  /** A sender's messages, due or not, in the order of their making, at most `limit`. */
+  waiting(sender: string, limit: number): Promise<readonly Delivery[]>;
   delivered(messageId: string): Promise<void>;
   deliveryFailed(messageId: string, nextAttemptMs: number, error: string): Promise<void>;
   /** Moves a message out of the way for good; it stays readable as given up. */
   deliveryGivenUp(messageId: string, error: string): Promise<void>;
+  /** In the order of their making. */
   digestEntries(sender: string): Promise<readonly DigestEntry[]>;
-  /** Replaces all digest entries of the message's sender by the message, in one transaction. */
-  closeDigest(message: Message): Promise<void>;
+  /** Replaces the first `entries` of the message's sender by the message, in one transaction. */
+  closeDigest(message: Message, entries: number): Promise<void>;
 
   // Upkeep -------------------------------------------------------------------------------------
   bytes(): Promise<number>;

@@ -94,41 +94,44 @@ function digestMethods(session: Session): Pick<Store, 'digestEntries' | 'closeDi
     `SELECT sender, alert_id AS alertId, event, created_at_ms AS createdAtMs
      FROM digest_entries WHERE sender = ? ORDER BY sequence`,
   );
-  const clear = session.db.prepare<[string]>('DELETE FROM digest_entries WHERE sender = ?');
+  const clear = session.db.prepare<[string, number]>(
+    `DELETE FROM digest_entries WHERE sequence IN
+     (SELECT sequence FROM digest_entries WHERE sender = ? ORDER BY sequence LIMIT ?)`,
+  );
   const writeMessage = messageWriter(session);
   return {
     digestEntries: (sender) => session.read('read digest entries', () => select.all(sender)),
-    closeDigest: (message) =>
+    closeDigest: (message, entries) =>
       session.write('close a digest', () => {
-        clear.run(message.sender);
+        clear.run(message.sender, entries);
         writeMessage(message);
       }),
   };
 }
 
 type OutboxMethod =
-  keyof Attempts | 'dueDeliveries' | 'nextDeliveryMs' | 'digestEntries' | 'closeDigest';
+  keyof Attempts | 'waitingSenders' | 'waiting' | 'digestEntries' | 'closeDigest';
 
 export function outboxMethods(session: Session): Pick<Store, OutboxMethod> {
-  const due = session.db.prepare<
-    [number, number],
+  const senders = session.db
+    .prepare<[], string>(`SELECT DISTINCT sender FROM messages WHERE state = 'due' ORDER BY sender`)
+    .pluck();
+  const waiting = session.db.prepare<
+    [string, number],
     { body: string; attempts: number; nextAttemptMs: number }
   >(
     `SELECT body, attempts, next_attempt_ms AS nextAttemptMs FROM messages
-     WHERE state = 'due' AND next_attempt_ms <= ? ORDER BY created_at_ms, sequence LIMIT ?`,
+     WHERE state = 'due' AND sender = ? ORDER BY created_at_ms, sequence LIMIT ?`,
   );
-  const next = session.db
-    .prepare<[], number | null>(`SELECT min(next_attempt_ms) FROM messages WHERE state = 'due'`)
-    .pluck();
   return {
     ...attemptMethods(session),
     ...digestMethods(session),
-    dueDeliveries: (nowMs, limit) =>
+    waitingSenders: () => session.read('read the outbox', () => senders.all()),
+    waiting: (sender, limit) =>
       session.read('read the outbox', () =>
-        due.all(nowMs, limit).map(({ body, attempts, nextAttemptMs }): Delivery => {
+        waiting.all(sender, limit).map(({ body, attempts, nextAttemptMs }): Delivery => {
           return { message: fromJson(body) as Message, attempts, nextAttemptMs };
         }),
       ),
-    nextDeliveryMs: () => session.read('read the outbox', () => next.get() ?? null),
   };
 }

@@ -3,38 +3,37 @@ import type { Store } from '../../../src/store/store.js';
 import { begin, restarted, type Open } from './opened.js';
 import { listOf, message, round, T0 } from './values.js';
 
-async function dueIds(store: Store, nowMs: number, limit = 10): Promise<string[]> {
-  return (await store.dueDeliveries(nowMs, limit)).map((delivery) => delivery.message.id);
+async function waitingIds(store: Store, sender: string, limit = 10): Promise<string[]> {
+  return (await store.waiting(sender, limit)).map((delivery) => delivery.message.id);
 }
 
 export function outboxContract(open: Open): void {
-  it('has nothing due and no next attempt while it is empty', async () => {
+  it('has no sender with messages while it is empty', async () => {
     const { store } = await begin(open);
-    expect(await store.dueDeliveries(T0, 10)).toEqual([]);
-    expect(await store.nextDeliveryMs()).toBeNull();
+    expect(await store.waitingSenders()).toEqual([]);
+    expect(await store.waiting('oncall', 10)).toEqual([]);
   });
 
-  it('gives due messages oldest first, as many as asked for', async () => {
+  it("gives a sender's messages in the order of their making, as many as asked for", async () => {
     const { store } = await begin(open);
     const old = message('old', { createdAtMs: T0 - 5 });
-    const messages = [message('b'), message('a'), old, message('new', { createdAtMs: T0 + 5 })];
+    const other = message('other', { sender: 'mail' });
+    const messages = [message('b'), other, message('a'), old];
     await store.commitRound(round(0, { messages }));
-    expect(await dueIds(store, T0)).toEqual(['old', 'b', 'a']);
-    expect(await dueIds(store, T0, 2)).toEqual(['old', 'b']);
-    expect(await dueIds(store, T0 - 6)).toEqual([]);
-    expect(await store.nextDeliveryMs()).toBe(T0 - 5);
+    expect(await store.waitingSenders()).toEqual(['mail', 'oncall']);
+    expect(await waitingIds(store, 'oncall')).toEqual(['old', 'b', 'a']);
+    expect(await waitingIds(store, 'oncall', 2)).toEqual(['old', 'b']);
+    expect(await waitingIds(store, 'mail')).toEqual(['other']);
   });
 
-  it('waits with a failed message until its next attempt, also over a restart', async () => {
+  it('keeps the attempts at a failed message and the time of the next, over a restart', async () => {
     const opened = await begin(open);
     await opened.store.commitRound(round(0, { messages: [message('m1')] }));
     await opened.store.deliveryFailed('m1', T0 + 100, 'refused: 503');
     await opened.store.deliveryFailed('m1', T0 + 300, 'refused: 503');
     const store = await restarted(opened);
-    expect(await dueIds(store, T0 + 299)).toEqual([]);
-    expect(await store.nextDeliveryMs()).toBe(T0 + 300);
     const delivery = { message: message('m1'), attempts: 2, nextAttemptMs: T0 + 300 };
-    expect(await store.dueDeliveries(T0 + 300, 10)).toEqual([delivery]);
+    expect(await store.waiting('oncall', 10)).toEqual([delivery]);
   });
 
   it('is rid of a message that was delivered or given up, and counts both', async () => {
@@ -46,8 +45,7 @@ export function outboxContract(open: Open): void {
     await opened.store.delivered('m3');
     await opened.store.deliveryGivenUp('m2', 'refused: 410');
     const store = await restarted(opened);
-    expect(await dueIds(store, T0 + 1e9)).toEqual([]);
-    expect(await store.nextDeliveryMs()).toBeNull();
+    expect(await store.waitingSenders()).toEqual([]);
     expect((await store.totals()).deliveries).toEqual([
       { sender: 'mail', outcome: 'delivered', count: 1 },
       { sender: 'oncall', outcome: 'delivered', count: 1 },
@@ -70,7 +68,7 @@ export function outboxContract(open: Open): void {
     expect(await store.totals()).toEqual(before);
   });
 
-  it("replaces a sender's digest entries by the message, and leaves other senders'", async () => {
+  it("replaces a sender's first digest entries by the message, and leaves all others", async () => {
     const opened = await begin(open);
     const entry = (sender: string, alertId: string, createdAtMs: number) => {
       return { sender, alertId, event: 'raised', createdAtMs };
@@ -81,11 +79,11 @@ export function outboxContract(open: Open): void {
     await opened.store.commitRound(round(1, { digestEntries: [two] }));
     expect(await opened.store.digestEntries('mail')).toEqual([one, two]);
     const digest = message('d1', { sender: 'mail', event: 'digest' });
-    await opened.store.closeDigest(digest);
+    await opened.store.closeDigest(digest, 1);
     const store = await restarted(opened);
-    expect(await store.digestEntries('mail')).toEqual([]);
+    expect(await store.digestEntries('mail')).toEqual([two]);
     expect(await store.digestEntries('oncall')).toEqual([other]);
-    expect(await dueIds(store, T0)).toEqual(['d1']);
+    expect(await waitingIds(store, 'mail')).toEqual(['d1']);
   });
 
   it('keeps the digest entries when their message cannot be stored', async () => {
@@ -93,7 +91,7 @@ export function outboxContract(open: Open): void {
     const entry = { sender: 'mail', alertId: 'a1', event: 'raised', createdAtMs: T0 };
     const taken = message('d1', { sender: 'mail' });
     await store.commitRound(round(0, { digestEntries: [entry], messages: [taken] }));
-    await expect(store.closeDigest(taken)).rejects.toThrow(/message d1 to mail is in the outbox/);
+    await expect(store.closeDigest(taken, 1)).rejects.toThrow(/message d1 to mail is in the outbox/);
     expect(await store.digestEntries('mail')).toEqual([entry]);
     expect(await listOf(store.batches())).toHaveLength(1);
   });

@@ -28,7 +28,7 @@ async function everything(store: Store): Promise<unknown> {
     states: await store.strandStates(),
     judgedTo: await store.judgedTo(),
     alerts: await store.alerts({}),
-    due: await store.dueDeliveries(T0 + 1e9, 100),
+    waiting: await store.waiting('oncall', 100),
     digest: await store.digestEntries('mail'),
     totals: await store.totals(),
   };
@@ -46,7 +46,7 @@ export function roundsContract(open: Open): void {
     expect(await store.alerts({})).toEqual(given.alerts);
     expect(await store.digestEntries('mail')).toEqual([entry]);
     const delivery = { message: given.messages[0], attempts: 0, nextAttemptMs: T0 };
-    expect(await store.dueDeliveries(T0, 10)).toEqual([delivery]);
+    expect(await store.waiting(given.messages[0]?.sender ?? '', 10)).toEqual([delivery]);
     expect(await store.judgedTo()).toEqual(new Map([['m', T0 + MINUTE]]));
   });
 

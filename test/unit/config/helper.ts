@@ -10,7 +10,7 @@ export interface Surroundings {
   readonly files?: Readonly<Record<string, string>>;
 }
 
-export function read(text: string, { env = {}, files = {} }: Surroundings = {}): ConfigResult {
+function read(text: string, { env = {}, files = {} }: Surroundings = {}): ConfigResult {
   const readText = (path: string): string => {
     const found = files[path];
     if (found === undefined) throw new Error('no such file');

@@ -16,7 +16,7 @@ describe('the reference table', () => {
   it('has a note in every row and no key that is not built yet', () => {
     const cells = rows.slice(2, -1).map((row) => row.split(' | '));
     expect(cells.filter(([, , note = '']) => note === '' || note === '|')).toEqual([]);
-    expect(referenceTable()).not.toMatch(/keep`|once_per|peers|tokens|email/);
+    expect(referenceTable()).not.toMatch(/\*\.keep`|once_per|peers|tokens|email/);
   });
 });
 

@@ -31,7 +31,7 @@ describe('closing digests', () => {
   it('does nothing and names no time when no entry waits', async () => {
     const store = new FakeStore();
     expect(await close(store, startMs)).toBeNull();
-    expect(store.waiting).toEqual([]);
+    expect(store.queue).toEqual([]);
   });
 
   it('keeps the entries until the sender’s digest time after the first is over', async () => {
@@ -45,14 +45,14 @@ describe('closing digests', () => {
   it('closes at once when catching up has just ended', async () => {
     const store = storeWith(3);
     expect(await close(store, startMs + 10, true)).toBeNull();
-    expect(store.waiting.map(({ message }) => message.event)).toEqual(['digest']);
+    expect(store.queue.map(({ message }) => message.event)).toEqual(['digest']);
   });
 
   it('counts what was raised and what is still open, and lists a sentence an alert', async () => {
     const store = storeWith(3);
     store.entries.push(entry('a-001', { event: 'returned', createdAtMs: startMs + 9 }));
     await close(store, startMs + 10, true);
-    const message = store.waiting[0]?.message;
+    const message = store.queue[0]?.message;
     expect(message?.summary.split('\n')).toEqual([
       'while Tallyward was away: 3 shifts, 2 still open',
       'sentence a-000',
@@ -65,13 +65,13 @@ describe('closing digests', () => {
   it('says one shift in the singular', async () => {
     const store = storeWith(1);
     await close(store, startMs, true);
-    expect(store.waiting[0]?.message.summary).toMatch(/away: 1 shift, 1 still open\n/);
+    expect(store.queue[0]?.message.summary).toMatch(/away: 1 shift, 1 still open\n/);
   });
 
   it('lists fifty alerts and counts the others when there are more', async () => {
     const store = storeWith(253);
     await close(store, startMs, true);
-    const message = store.waiting[0]?.message;
+    const message = store.queue[0]?.message;
     const lines = message?.summary.split('\n') ?? [];
     expect(lines[0]).toBe('while Tallyward was away: 253 shifts, 127 still open');
     expect(lines).toHaveLength(52);
@@ -84,7 +84,7 @@ describe('closing digests', () => {
     const stores = [storeWith(5), storeWith(5)];
     stores[1]?.entries.reverse();
     for (const [i, store] of stores.entries()) await close(store, startMs + i, true);
-    const ids = stores.map((store) => store.waiting[0]?.message.id);
+    const ids = stores.map((store) => store.queue[0]?.message.id);
     expect(ids[0]).toMatch(/^digest-[0-9a-f]{32}$/);
     expect(ids[1]).toBe(ids[0]);
   });
@@ -93,7 +93,7 @@ describe('closing digests', () => {
     const stores = [storeWith(2), storeWith(2)];
     if (stores[1] !== undefined) stores[1].entries = [entry('a-001')];
     for (const store of stores) await close(store, startMs, true);
-    const ids = stores.map((store) => store.waiting[0]?.message.id);
+    const ids = stores.map((store) => store.queue[0]?.message.id);
     expect(ids[1]).not.toBe(ids[0]);
   });
 });

@@ -5,7 +5,8 @@ import type { DigestEntry } from '../../../src/terms/round.js';
 
 type OutboxPart = Pick<
   Store,
-  | 'dueDeliveries'
+  | 'waitingSenders'
+  | 'waiting'
   | 'delivered'
   | 'deliveryFailed'
   | 'deliveryGivenUp'
@@ -16,7 +17,7 @@ type OutboxPart = Pick<
 
 /** The outbox part of a store in memory, with a diary of what was done to it. */
 export class FakeStore implements OutboxPart {
-  waiting: Delivery[] = [];
+  queue: Delivery[] = [];
   entries: DigestEntry[] = [];
   known: Alert[] = [];
   readonly delivereds: string[] = [];
@@ -26,12 +27,19 @@ export class FakeStore implements OutboxPart {
 
   put(...messages: readonly Message[]): void {
     for (const message of messages) {
-      this.waiting.push({ message, attempts: 0, nextAttemptMs: message.createdAtMs });
+      this.queue.push({ message, attempts: 0, nextAttemptMs: message.createdAtMs });
     }
   }
 
-  async dueDeliveries(nowMs: number, limit: number): Promise<readonly Delivery[]> {
-    return this.waiting.filter(({ nextAttemptMs }) => nextAttemptMs <= nowMs).slice(0, limit);
+  async waitingSenders(): Promise<readonly string[]> {
+    return [...new Set(this.queue.map(({ message }) => message.sender))].sort();
+  }
+
+  async waiting(sender: string, limit: number): Promise<readonly Delivery[]> {
+    return this.queue
+      .filter(({ message }) => message.sender === sender)
+      .sort((a, b) => a.message.createdAtMs - b.message.createdAtMs)
+      .slice(0, limit);
   }
 
   async delivered(messageId: string): Promise<void> {
@@ -41,7 +49,7 @@ export class FakeStore implements OutboxPart {
 
   async deliveryFailed(id: string, nextMs: number, error: string): Promise<void> {
     this.failures.push({ id, nextMs, error });
-    this.waiting = this.waiting.map((delivery) =>
+    this.queue = this.queue.map((delivery) =>
       delivery.message.id === id
         ? { ...delivery, attempts: delivery.attempts + 1, nextAttemptMs: nextMs }
         : delivery,
@@ -57,8 +65,9 @@ export class FakeStore implements OutboxPart {
     return this.entries.filter((entry) => entry.sender === sender);
   }
 
-  async closeDigest(message: Message): Promise<void> {
-    this.entries = this.entries.filter(({ sender }) => sender !== message.sender);
+  async closeDigest(message: Message, entries: number): Promise<void> {
+    const own = this.entries.filter(({ sender }) => sender === message.sender).slice(0, entries);
+    this.entries = this.entries.filter((entry) => !own.includes(entry));
     this.put(message);
   }
 
@@ -67,6 +76,6 @@ export class FakeStore implements OutboxPart {
   }
 
   #remove(id: string): void {
-    this.waiting = this.waiting.filter(({ message }) => message.id !== id);
+    this.queue = this.queue.filter(({ message }) => message.id !== id);
   }
 }

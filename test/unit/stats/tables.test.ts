@@ -158,6 +158,16 @@ describe('exactTable', () => {
     });
   });
 
+  it('a 2 x 5 table gives the p that whole-number enumeration gives', () => {
+    const table = [
+      [15, 12, 10, 5, 4],
+      [12, 14, 7, 8, 2],
+    ];
+    // All tables listed with Python's math.comb and fractions.Fraction: 0.7157449240626784.
+    const result = exactTable({ table, maxWork: 1_000_000 });
+    expect('p' in result && result.p).toBeCloseTo(0.7157449240626784, 12);
+  });
+
   it('a table too large for the work allowed says so and how much it took', () => {
     const table = [
       [300, 200, 100],
