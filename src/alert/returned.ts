@@ -1,3 +1,4 @@
+import { designWeight } from '../stats/designWeight.js';
 import { tUpperQuantile } from '../stats/tUpperQuantile.js';
 import type { Alarm, Carriers } from '../terms/recipe.js';
 import type { Counts } from '../terms/tally.js';
@@ -75,7 +76,7 @@ function poolWindows(alarm: Alarm, windows: readonly Counts[]): Pool {
   let carried = 0;
   for (const counts of windows) {
     const { n, inside } = split(counts, alarm.carriers);
-    const w = n === 0 ? 0 : n / (1 + (n - 1) * alarm.rho);
+    const w = designWeight(n, alarm.rho);
     weight += w;
     carried += n === 0 ? 0 : (w * inside) / n;
   }

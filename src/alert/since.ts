@@ -1,3 +1,4 @@
+import { designWeight } from '../stats/designWeight.js';
 import { changePoint } from '../stats/changePoint.js';
 import type { Since } from '../terms/alert.js';
 import type { Window } from '../terms/window.js';
@@ -47,5 +48,5 @@ export function sinceWhen(input: SinceInput): Since {
 
 function weigh(counts: readonly number[], rho: number): number[] {
   const n = counts.reduce((a, b) => a + b, 0);
-  return n === 0 ? [...counts] : counts.map((count) => count / (1 + (n - 1) * rho));
+  return n === 0 ? [...counts] : counts.map((count) => (count * designWeight(n, rho)) / n);
 }

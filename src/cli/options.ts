@@ -4,7 +4,7 @@ import { CommandError, EXIT } from './ports.js';
 const parseInstant = timeParser({ kind: 'iso' }, 'UTC');
 
 /** An instant given on the command line; undefined stays undefined. */
-export function instantOption(name: string, text: string | undefined): number | undefined {
+function instantOption(name: string, text: string | undefined): number | undefined {
   if (text === undefined) return undefined;
   const ms = parseInstant(text);
   if (ms !== null) return ms;

@@ -1,3 +1,5 @@
+import { CsvError } from 'csv-parse';
+import { parse } from 'csv-parse/sync';
 import type { Read } from './leaves.js';
 
 /** Counts from outside: one map a window, or a single map where the file names no windows. */
@@ -7,6 +9,7 @@ export interface FileCounts {
 }
 
 const MAX_COUNTS_BYTES = 16 * 1_048_576;
+const MAX_ROW_CHARACTERS = 65_536;
 
 /**
  * Reads CSV (RFC 4180) with the header `category,count` or `category,count,window`. Windows stand
@@ -17,7 +20,9 @@ export function readCounts(text: string): Read<FileCounts> {
   if (Buffer.byteLength(text, 'utf8') > MAX_COUNTS_BYTES) {
     return { refused: 'is over 16 MiB; write a smaller file' };
   }
-  const [header, ...rows] = csvRows(text.replace(/^\uFEFF/, ''));
+  const read = csvRows(text);
+  if (typeof read === 'string') return { refused: `is no CSV (${read}); quote fields as RFC 4180` };
+  const [header, ...rows] = read;
   const columns = header?.cells.join(',');
   if (columns !== 'category,count' && columns !== 'category,count,window') {
     return { refused: 'has no header category,count or category,count,window; write one' };
@@ -55,25 +60,25 @@ interface Row {
   readonly cells: readonly string[];
 }
 
-/** Rows of a CSV text, empty lines left out; quoted fields may hold commas, quotes and lines. */
-function csvRows(text: string): readonly Row[] {
-  const rows: Row[] = [];
-  const field = /(?:"((?:[^"]|""){0,4096})"|([^",\r\n]*))(,|\r?\n|$)/y;
-  let cells: string[] = [];
-  let line = 1;
-  let begins = 1;
-  while (field.lastIndex < text.length || cells.length > 0) {
-    const match = field.exec(text);
-    // Text after a closing quote: no field, which the number of fields then shows.
-    if (match === null) return [...rows, { line: begins, cells: [] }];
-    const [whole, quoted, plain, end] = match;
-    cells.push(quoted === undefined ? (plain ?? '') : quoted.replaceAll('""', '"'));
-    line += whole.split('\n').length - 1;
-    if (end !== ',') {
-      if (cells.length > 1 || cells[0] !== '') rows.push({ line: begins, cells });
-      cells = [];
-      begins = line;
-    }
+interface Parsed {
+  readonly info: { readonly lines: number };
+  readonly record: readonly string[];
+}
+
+/** Rows of a CSV text, or what is wrong with it; empty lines left out. */
+function csvRows(text: string): readonly Row[] | string {
+  try {
+    // The library's types do not know what `info` makes of its answer.
+    const rows: unknown = parse(text, {
+      bom: true,
+      info: true,
+      relax_column_count: true,
+      skip_empty_lines: true,
+      max_record_size: MAX_ROW_CHARACTERS,
+    });
+    return (rows as Parsed[]).map(({ info, record }) => ({ line: info.lines, cells: record }));
+  } catch (error) {
+    if (error instanceof CsvError) return error.message;
+    throw error;
   }
-  return rows;
 }

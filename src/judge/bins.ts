@@ -1,9 +1,7 @@
+import { POOLED, REST } from '../config/strand.js';
 import { poolByMargins } from '../stats/poolByMargins.js';
 import { poolDeclared } from '../stats/poolDeclared.js';
 import type { Counts } from '../terms/tally.js';
-
-export const POOLED = '(pooled)';
-export const REST = '(rest)';
 
 /** How categories are gathered into the columns of a table. */
 export interface Bins {

@@ -1,10 +1,11 @@
+import { REST } from '../config/strand.js';
 import { newcombeLowerBound } from '../stats/newcombeLowerBound.js';
 import { quasiLikelihoodF } from '../stats/quasiLikelihoodF.js';
 import type { Comparison, Evidence } from '../terms/evidence.js';
 import type { Carriers } from '../terms/recipe.js';
 import type { Counts } from '../terms/tally.js';
 import type { Bins } from './bins.js';
-import { binCounts, REST } from './bins.js';
+import { binCounts } from './bins.js';
 import { describe, sharesOf } from './compare.js';
 import type { Reference } from './reference.js';
 

@@ -1,3 +1,4 @@
+import { REST } from '../config/strand.js';
 import type { Calendar } from '../clock/calendar.js';
 import type { MixConfig } from '../config/types.js';
 import type { Recipe } from '../terms/recipe.js';
@@ -105,10 +106,10 @@ function declaredShares(
   yardstick: Extract<MixConfig['yardstick'], { kind: 'declared' }>,
 ): ReadonlyMap<string, number> {
   const shares = new Map(yardstick.shares.map((s) => [s.category, s.share]));
-  if (shares.has('(rest)')) return shares;
+  if (shares.has(REST)) return shares;
   const scale = 1 / (1 + yardstick.halfUnit);
   const scaled = new Map([...shares].map(([category, share]) => [category, share * scale]));
-  return scaled.set('(rest)', yardstick.halfUnit * scale);
+  return scaled.set(REST, yardstick.halfUnit * scale);
 }
 
 function previous(
@@ -204,7 +205,7 @@ function optionsOf(mix: MixConfig): {
 }
 
 /** Sum over windows, categories in code-point order. */
-export function merge(windows: readonly { readonly counts: Counts }[]): Counts {
+function merge(windows: readonly { readonly counts: Counts }[]): Counts {
   const sums = new Map<string, number>();
   for (const { counts } of windows) {
     for (const [category, n] of counts) sums.set(category, (sums.get(category) ?? 0) + n);

@@ -1,5 +1,6 @@
+import { designWeight } from '../stats/designWeight.js';
 import { dispersionOfSlots } from '../stats/dispersionOfSlots.js';
-import { dispersionOfSuccessive } from '../stats/dispersionOfSuccessive.js';
+import { dispersionOfSuccessive, type SuccessivePair } from '../stats/dispersionOfSuccessive.js';
 import { estimateDispersion } from '../stats/estimateDispersion.js';
 import type { ReferenceNote } from '../terms/evidence.js';
 import type { Counts } from '../terms/tally.js';
@@ -8,7 +9,7 @@ import type { Bins } from './bins.js';
 import { binCounts } from './bins.js';
 
 /** Fewest windows, or pairs of windows, from which dispersion is learned. */
-export const FEWEST_WINDOWS = 8;
+const FEWEST_WINDOWS = 8;
 /** Fewest degrees of freedom behind the dispersion with which a window may be judged. */
 const FEWEST_DF2 = 20;
 /** Pairs of neighbouring windows that a dispersion by successive differences looks at. */
@@ -66,7 +67,7 @@ export function fileReference(
   const events = sum(before);
   return enough({
     shares: before.map((n) => n / events),
-    weight: effective(events, dispersion.rho),
+    weight: designWeight(events, dispersion.rho),
     ...dispersion,
     note: {
       yardstick: 'baseline',
@@ -134,11 +135,6 @@ export function declaredReference(
   });
 }
 
-/** Events that a window of n dependent ones is worth: n / (1 + (n - 1) rho). */
-export function effective(n: number, rho: number): number {
-  return n === 0 ? 0 : n / (1 + (n - 1) * rho);
-}
-
 function fromNeighbours(
   recent: readonly WindowCounts[],
   n: number,
@@ -153,21 +149,15 @@ function fromNeighbours(
 }
 
 /** (sum of n windows, the next one), newest PAIRS of them, only where no window is missing. */
-function neighbours(
-  recent: readonly WindowCounts[],
-  n: number,
-  bins: Bins,
-): { before: number[]; after: number[] }[] {
+function neighbours(recent: readonly WindowCounts[], n: number, bins: Bins): SuccessivePair[] {
   const counts = recent.map((w) => binCounts(w.counts, bins));
-  const pairs: { before: number[]; after: number[] }[] = [];
+  const pairs: SuccessivePair[] = [];
   for (let at = recent.length - 1; at >= n && pairs.length < PAIRS; at--) {
-    const run = recent.slice(at - n, at + 1);
     const after = counts[at];
-    if (after === undefined || !isUnbroken(run)) continue;
-    const before = counts
-      .slice(at - n, at)
-      .reduce((total, row) => total.map((v, k) => v + (row[k] ?? 0)));
-    pairs.push({ before, after });
+    if (after === undefined || !isUnbroken(recent.slice(at - n, at + 1))) continue;
+    const run = counts.slice(at - n, at);
+    const before = run.reduce((total, row) => total.map((v, k) => v + (row[k] ?? 0)));
+    pairs.push({ before, sizes: run.map(sum), after });
   }
   return pairs;
 }
@@ -186,7 +176,7 @@ function weighedShares(
   for (const w of windows) {
     const counts = binCounts(w.counts, bins);
     const n = sum(counts);
-    const per = n === 0 ? 0 : effective(n, rho) / n;
+    const per = n === 0 ? 0 : designWeight(n, rho) / n;
     weight += per * n;
     counts.forEach((count, at) => {
       sums[at] = (sums[at] ?? 0) + per * count;

@@ -3,7 +3,7 @@ import { type Calendar, calendarOf } from '../clock/calendar.js';
 import type { Config, MixConfig } from '../config/types.js';
 
 const DAY_MS = 86_400_000;
-/** `settle` and forgetting never take fewer windows than this. */
+/** Where the configuration does not say how long, a shift settles after as many windows. */
 const FEWEST_WINDOWS = 24;
 
 /** A mix with everything that follows from its configuration. */
@@ -13,8 +13,6 @@ export interface MixPlan {
   readonly share: BudgetShare;
   /** How long a shift must last to become the reference. */
   readonly settleMs: number;
-  /** How long a strand may be without events before it is forgotten. */
-  readonly forgetMs: number;
 }
 
 export function planMixes(config: Pick<Config, 'mixes' | 'falseAlarms'>): MixPlan[] {
@@ -35,7 +33,6 @@ export function planMixes(config: Pick<Config, 'mixes' | 'falseAlarms'>): MixPla
     calendar,
     share: shareOf(mix.name, shares),
     settleMs: mix.settleMs ?? Math.max(DAY_MS, FEWEST_WINDOWS * calendar.nominalMs),
-    forgetMs: Math.max(mix.limits.forgetMs, FEWEST_WINDOWS * calendar.nominalMs),
   }));
 }
 

@@ -89,7 +89,7 @@ export class Strands {
 const NOTHING: Counts = new Map();
 
 function isForgotten(plan: MixPlan, window: Window, memory: StrandMemory): boolean {
-  return window.endMs - memory.lastMs > plan.forgetMs;
+  return window.endMs - memory.lastMs > plan.mix.limits.forgetMs;
 }
 
 function firstMemory(window: Window): StrandMemory {

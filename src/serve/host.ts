@@ -4,7 +4,7 @@ import type { FastifyInstance } from 'fastify';
  * Whether a `Host` header names this machine's loopback: `localhost`, `127.0.0.1` (or another
  * address of that block, which no name can stand for) or `[::1]`, with any port or none.
  */
-export function isLoopbackHost(host: string | undefined): boolean {
+function isLoopbackHost(host: string | undefined): boolean {
   if (host === undefined || host.length > 64) return false;
   return /^(localhost|127(\.\d{1,3}){3}|\[::1\])(:\d{1,5})?$/i.test(host);
 }

@@ -11,12 +11,16 @@ const TRIM_LEVEL = 0.05;
 /** A window (or windows summed) and the one after it, counts by bin. */
 export interface SuccessivePair {
   readonly before: readonly number[];
+  /** Events of each window summed in `before`; one window when absent. */
+  readonly sizes?: readonly number[];
   readonly after: readonly number[];
 }
 
 interface Sampled {
   readonly before: readonly number[];
   readonly eventsBefore: number;
+  /** Their effective events are summed: windows vary independently of each other. */
+  readonly sizes: readonly number[];
   readonly after: readonly number[];
   readonly eventsAfter: number;
 }
@@ -24,7 +28,8 @@ interface Sampled {
 /**
  * Intra-window correlation from the differences of successive windows, which slow wander passes.
  *
- * G_i(rho) is the two-window deviance of pair i with weights N/(1 + (N-1) rho). rho solves
+ * G_i(rho) is the deviance of pair i with weights N/(1 + (N-1) rho), summed over the windows of
+ * its earlier side. rho solves
  * sum_i G_i(rho) = H (K-1) over H pairs, robustly: start where the median of G_i(rho) is the
  * median of chi-squared on K-1; then three times leave out the pairs with
  * G_i(rho)/(K-1) > F_{.05/H}(K-1, .6 H (K-1)) and solve again. With equal N this is the trimmed
@@ -59,7 +64,7 @@ export function dispersionOfSuccessive(pairs: readonly SuccessivePair[]): {
 
 function sample(pairs: readonly SuccessivePair[]): Sampled[] {
   const width = pairs[0]?.before.length ?? 0;
-  const sampled = pairs.map(({ before, after }, i) => {
+  const sampled = pairs.map(({ before, sizes, after }, i) => {
     for (const [name, counts] of [
       ['before', before],
       ['after', after],
@@ -67,7 +72,17 @@ function sample(pairs: readonly SuccessivePair[]): Sampled[] {
       requireLength(`pairs[${i}].${name}`, counts, width);
       requireCounts(`pairs[${i}].${name}`, counts);
     }
-    return { before, eventsBefore: sum(before), after, eventsAfter: sum(after) };
+    const eventsBefore = sum(before);
+    if (sizes !== undefined && sum(sizes) !== eventsBefore) {
+      throw new RangeError(`pairs[${i}].sizes: sum to ${sum(sizes)}, not to ${eventsBefore}`);
+    }
+    return {
+      before,
+      eventsBefore,
+      sizes: sizes ?? [eventsBefore],
+      after,
+      eventsAfter: sum(after),
+    };
   });
   return sampled.filter((pair) => pair.eventsBefore > 0 && pair.eventsAfter > 0);
 }
@@ -83,7 +98,7 @@ function devianceOfRho(pair: Sampled): (rho: number) => number {
   const [ownNow, ownBefore] = [negativeEntropy(q), negativeEntropy(p)];
   const at = (rho: number): number => {
     const a = designWeight(eventsAfter, rho);
-    const b = designWeight(eventsBefore, rho);
+    const b = pair.sizes.reduce((total, size) => total + designWeight(size, rho), 0);
     let cross = 0;
     for (let k = 0; k < q.length; k += 1) {
       const joint = a * (q[k] ?? 0) + b * (p[k] ?? 0);
@@ -91,7 +106,7 @@ function devianceOfRho(pair: Sampled): (rho: number) => number {
     }
     return Math.max(0, 2 * (a * ownNow + b * ownBefore - cross));
   };
-  if (eventsBefore !== eventsAfter) return at;
+  if (pair.sizes.length > 1 || eventsBefore !== eventsAfter) return at;
   const plain = at(0);
   return (rho) => plain / (1 + (eventsAfter - 1) * rho);
 }

@@ -1,5 +1,5 @@
 /** Largest intra-window correlation looked for. */
-export const MAX_RHO = 0.999;
+const MAX_RHO = 0.999;
 
 const MAX_STEPS = 200;
 const WIDTH = 1e-15;

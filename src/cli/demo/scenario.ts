@@ -5,7 +5,7 @@ import { xoroshiro128plus } from 'pure-rand/generator/xoroshiro128plus';
  * Saltmere Parcels, an invented carrier with four depots. Every parcel that leaves a depot writes
  * one line: what became of it, its size, how it was paid.
  */
-export const DEPOTS = ['saltmarsh', 'highmoor', 'ferrybank', 'oldquay'] as const;
+const DEPOTS = ['saltmarsh', 'highmoor', 'ferrybank', 'oldquay'] as const;
 type Depot = (typeof DEPOTS)[number];
 
 type Shares = readonly (readonly [value: string, share: number])[];
@@ -41,7 +41,7 @@ const PAYMENTS: Shares = [
 ];
 
 /** Lines a second and depot in ordinary times. */
-export const LINES_PER_SECOND = 25;
+const LINES_PER_SECOND = 25;
 export const SHIFTED_DEPOT: Depot = 'saltmarsh';
 /** Its traffic grows when the other's mix shifts; its own mix stays like everyone's. */
 export const GROWING_DEPOT: Depot = 'highmoor';

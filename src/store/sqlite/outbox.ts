@@ -109,8 +109,7 @@ function digestMethods(session: Session): Pick<Store, 'digestEntries' | 'closeDi
   };
 }
 
-type OutboxMethod =
-  keyof Attempts | 'waitingSenders' | 'waiting' | 'digestEntries' | 'closeDigest';
+type OutboxMethod = keyof Attempts | 'waitingSenders' | 'waiting' | 'digestEntries' | 'closeDigest';
 
 export function outboxMethods(session: Session): Pick<Store, OutboxMethod> {
   const senders = session.db

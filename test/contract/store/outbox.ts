@@ -26,7 +26,7 @@ export function outboxContract(open: Open): void {
     expect(await waitingIds(store, 'mail')).toEqual(['other']);
   });
 
-  it('keeps the attempts at a failed message and the time of the next, over a restart', async () => {
+  it('keeps the attempts at a failed message and the time of the next one', async () => {
     const opened = await begin(open);
     await opened.store.commitRound(round(0, { messages: [message('m1')] }));
     await opened.store.deliveryFailed('m1', T0 + 100, 'refused: 503');
@@ -91,7 +91,9 @@ export function outboxContract(open: Open): void {
     const entry = { sender: 'mail', alertId: 'a1', event: 'raised', createdAtMs: T0 };
     const taken = message('d1', { sender: 'mail' });
     await store.commitRound(round(0, { digestEntries: [entry], messages: [taken] }));
-    await expect(store.closeDigest(taken, 1)).rejects.toThrow(/message d1 to mail is in the outbox/);
+    await expect(store.closeDigest(taken, 1)).rejects.toThrow(
+      /message d1 to mail is in the outbox/,
+    );
     expect(await store.digestEntries('mail')).toEqual([entry]);
     expect(await listOf(store.batches())).toHaveLength(1);
   });

@@ -355,7 +355,6 @@ describe('a file of counts', () => {
       'category,count\nok,1\nok,2\n',
       'line 3 repeats a category of its window; write their sum once',
     ],
-    ['category,count\n"ok"x,1\n', 'line 2 has 0 fields; write 2'],
     ['category,count\nok,0\n', 'holds no events; write a category and a count a line'],
   ];
   it.each(cases)('%j is told', (text, message) => {
@@ -363,5 +362,12 @@ describe('a file of counts', () => {
     expect(problems(file({ mix: lines }), { files: { 'c.csv': text } })).toEqual([
       `11:36: file "c.csv" ${message}`,
     ]);
+  });
+
+  it('with text behind a closing quote is told as no CSV, with its line', () => {
+    const lines = ['yardstick: { baseline: { file: c.csv } }'];
+    const files = { 'c.csv': 'category,count\n"ok"x,1\n' };
+    const [problem] = problems(file({ mix: lines }), { files });
+    expect(problem).toMatch(/^11:36: file "c\.csv" is no CSV \(.* line 2 .*\); quote fields/);
   });
 });
