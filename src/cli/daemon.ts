@@ -66,7 +66,7 @@ export class Daemon {
     try {
       const store = await openSqliteStore({ path: config.store });
       const version = programVersion();
-      const rounds = await Rounds.load({ config, store, clock: ports.clock, version });
+      const rounds = await Rounds.load({ config, store, clock: ports.clock, version, breathe });
       const collectors = await collectorsOf(config, {
         mode,
         clock: ports.clock,

@@ -1,6 +1,5 @@
 import { grouped } from '../alert/words.js';
 import { formatInstant } from '../clock/format.js';
-import { WHOLE } from '../config/strand.js';
 import type { RoundCommit } from '../terms/round.js';
 import type { VerdictName } from '../terms/verdict.js';
 import { type Ports, printLine } from './ports.js';
@@ -15,7 +14,6 @@ export class Journal {
   private readonly ports: Pick<Ports, 'stdout'>;
   private readonly alertsOnly: boolean;
   private counts = new Map<VerdictName, number>();
-  private events = 0;
   private lastSummaryMs: number | null = null;
   private told = new Set<string>();
 
@@ -27,8 +25,6 @@ export class Journal {
   round(round: RoundCommit): void {
     for (const verdict of round.verdicts) {
       this.counts.set(verdict.verdict, (this.counts.get(verdict.verdict) ?? 0) + 1);
-      // The split strands of a mix hold the same events as its whole.
-      if (verdict.strand === WHOLE) this.events += verdict.events;
       if (verdict.verdict !== 'steady' && !this.alertsOnly) {
         printLine(this.ports.stdout, verdictLine(verdict));
       }
@@ -51,11 +47,10 @@ export class Journal {
 
   summary(nowMs: number): void {
     const parts = [...this.counts].map(([verdict, n]) => `${grouped(n)} ${verdict}`);
-    const windows = parts.length === 0 ? 'no window closed' : parts.join(', ');
-    const events = `${grouped(this.events)} events in windows that closed`;
-    printLine(this.ports.stdout, `${formatInstant(nowMs)}  ${events}: ${windows}`);
+    const closed = [...this.counts.values()].reduce((a, b) => a + b, 0);
+    const text = closed === 0 ? 'no window closed' : `${grouped(closed)} windows closed: `;
+    printLine(this.ports.stdout, `${formatInstant(nowMs)}  ${text}${parts.join(', ')}`);
     this.counts = new Map();
-    this.events = 0;
     this.lastSummaryMs = nowMs;
   }
 

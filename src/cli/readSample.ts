@@ -13,6 +13,7 @@ import { type Decoder, NOT_SCALAR } from '../decode/types.js';
 import type { WindowCounts } from '../judge/reference.js';
 import type { Counts } from '../terms/tally.js';
 import { CommandError, EXIT } from './ports.js';
+import { wholeShares } from './wholeShares.js';
 
 /** How a sample's records are read; without a category the file is `category,count` CSV. */
 export interface SampleOptions {
@@ -20,6 +21,8 @@ export interface SampleOptions {
   readonly decode?: string;
   readonly time?: string;
   readonly window?: string;
+  /** The numbers of a CSV file are fixed shares, any that are not negative. */
+  readonly areShares?: boolean;
 }
 
 export interface Sample {
@@ -34,7 +37,7 @@ export interface Sample {
 export async function readSample(path: string, options: SampleOptions): Promise<Sample> {
   try {
     return options.category === undefined
-      ? readCsv(path)
+      ? readCsv(path, options.areShares === true)
       : await readLog(path, options.category, options);
   } catch (error) {
     if (error instanceof CommandError) throw error;
@@ -43,8 +46,9 @@ export async function readSample(path: string, options: SampleOptions): Promise<
   }
 }
 
-function readCsv(path: string): Sample {
-  const text = readFileSync(path, 'utf8');
+function readCsv(path: string, areShares: boolean): Sample {
+  const written = readFileSync(path, 'utf8');
+  const text = areShares ? wholeShares(written) : written;
   const header = /^\uFEFF?category,count/.test(text) ? '' : 'category,count\n';
   const read = readCounts(header + text);
   if ('refused' in read) {

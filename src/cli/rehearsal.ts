@@ -8,7 +8,7 @@ import type { SqliteStore } from '../store/sqlite/open.js';
 import { collectorsOf } from './collectors.js';
 import { Engine } from './engine.js';
 import type { QuerySpan } from './options.js';
-import type { Ports } from './ports.js';
+import { breathe, type Ports, printLine } from './ports.js';
 import { progress } from './progress.js';
 import { programVersion } from './version.js';
 
@@ -60,6 +60,9 @@ export async function rehearseLogs(
   // At the end of all input, what is complete need not wait for mixes that never will be.
   while ((await engine.judge({ whole: false })) > 0);
   show.end();
+  for (const problem of collectors.flatMap((collector) => collector.problems())) {
+    printLine(ports.stderr, problem);
+  }
   for (const collector of collectors) await collector.close();
 }
 
@@ -110,6 +113,7 @@ function load(config: Config, store: SqliteStore): Promise<Rounds> {
     store,
     clock: STANDING_CLOCK,
     version: programVersion(),
+    breathe,
   });
 }
 

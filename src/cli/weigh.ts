@@ -26,7 +26,8 @@ export async function weigh(
 ): Promise<number> {
   const limit = options.failOnShift === undefined ? 0 : probability(options.failOnShift);
   const test = testOf(options);
-  const before = await readSample(beforePath, options);
+  const areShares = options.declared === true;
+  const before = await readSample(beforePath, { ...options, areShares });
   const after = await readSample(afterPath, options);
   tellRejected(ports, beforePath, before);
   tellRejected(ports, afterPath, after);

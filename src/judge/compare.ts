@@ -1,3 +1,4 @@
+import { REST } from '../config/strand.js';
 import { cohensW } from '../stats/cohensW.js';
 import { cramersV } from '../stats/cramersV.js';
 import { goodnessOfFit } from '../stats/goodnessOfFit.js';
@@ -71,11 +72,19 @@ export function describe(sides: Sides): {
   return { description, carriers: amount.carriers };
 }
 
-/** Reads single categories' shares off the counts; declared shares stand for their counts. */
-export function sharesOf(before: Counts, after: Counts): Sides['shareOf'] {
-  const whole = { before: totalOf(before), after: totalOf(after) };
+/**
+ * Reads single categories' shares off the counts; declared shares stand for their counts. What has
+ * no place of its own in the bins is `(rest)`.
+ */
+export function sharesOf(before: Counts, after: Counts, bins: Bins): Sides['shareOf'] {
+  const named = new Set(bins.members.flat());
+  const restOf = (counts: Counts): number =>
+    sum([...counts].filter(([c]) => c === REST || !named.has(c)).map(([, n]) => n));
   const sides = { before, after };
-  return (side, category) => (sides[side].get(category) ?? 0) / whole[side];
+  const whole = { before: totalOf(before), after: totalOf(after) };
+  const rest = { before: restOf(before), after: restOf(after) };
+  return (side, category) =>
+    (category === REST ? rest[side] : (sides[side].get(category) ?? 0)) / whole[side];
 }
 
 function totalOf(counts: Counts): number {

@@ -14,6 +14,8 @@ export interface Tested {
   readonly evidence: Evidence;
   /** At least the tolerance has moved (the gate after the test). */
   readonly overTolerance: boolean;
+  /** The tolerance that the gate held it against: of the whole mix, or of one category. */
+  readonly gateTolerance: number;
   /** The categories that the gate owes its passing to, as a set that rises or falls together. */
   readonly carriers: Carriers;
 }
@@ -50,7 +52,7 @@ export function compareWindow(input: WindowInput): {
     bins,
     now,
     before: input.declared ? null : binCounts(input.before, bins),
-    shareOf: sharesOf(input.before, input.counts),
+    shareOf: sharesOf(input.before, input.counts, bins),
     shares: reference.shares,
     weightNow: test.weightNow,
     weightReference: reference.weight,
@@ -97,18 +99,26 @@ interface GateInput {
 }
 
 function withGate(evidence: Evidence, input: GateInput): Tested {
-  if (evidence.moved.atLeast > input.tolerance.moved) {
-    return { evidence, overTolerance: true, carriers: carriersOf(input.carriers, input) };
+  const gateTolerance = input.tolerance.moved;
+  if (evidence.moved.atLeast > gateTolerance) {
+    const carriers = carriersOf(input.carriers, input);
+    return { evidence, overTolerance: true, gateTolerance, carriers };
   }
   const own = categoryOverItsOwn(evidence, input);
   if (own !== null) {
-    return { evidence, overTolerance: true, carriers: carriersOf([own], input) };
+    const carriers = carriersOf([own.at], input);
+    return { evidence, overTolerance: true, gateTolerance: own.tolerance, carriers };
   }
-  return { evidence, overTolerance: false, carriers: carriersOf(risen(input), input) };
+  // A tolerance of nothing is no gate: the test alone decides.
+  const overTolerance = gateTolerance === 0;
+  return { evidence, overTolerance, gateTolerance, carriers: carriersOf(risen(input), input) };
 }
 
 /** The first category whose one-sided 95 % lower bound of change exceeds its own tolerance. */
-function categoryOverItsOwn(evidence: Evidence, input: GateInput): number | null {
+function categoryOverItsOwn(
+  evidence: Evidence,
+  input: GateInput,
+): { readonly at: number; readonly tolerance: number } | null {
   const total = input.now.reduce((a, b) => a + b, 0);
   for (const [at, members] of input.bins.members.entries()) {
     const [category] = members;
@@ -121,7 +131,7 @@ function categoryOverItsOwn(evidence: Evidence, input: GateInput): number | null
       before: input.reference.shares[at] ?? 0,
       nBefore: input.reference.weight,
     });
-    if (bound > tolerance) return at;
+    if (bound > tolerance) return { at, tolerance };
   }
   return null;
 }

@@ -1,4 +1,6 @@
 import { REST } from '../config/strand.js';
+import { merge, total } from './counts.js';
+import { FEWEST_CYCLES, slotAt, slotsOf } from './season.js';
 import type { Calendar } from '../clock/calendar.js';
 import type { MixConfig } from '../config/types.js';
 import type { Recipe } from '../terms/recipe.js';
@@ -41,6 +43,7 @@ export function usable(
 
 /**
  * Makes the yardstick of a mix for one window from its usable past windows, in time order.
+ * `recent` are those just before it, for a season that has no cycles yet (`lacksCycles`).
  * Pure: the same windows give the same material.
  */
 export function materialFor(
@@ -48,6 +51,7 @@ export function materialFor(
   calendar: Calendar,
   window: Window,
   past: readonly WindowCounts[],
+  recent: readonly WindowCounts[] = past,
 ): Material {
   const { yardstick } = mix;
   switch (yardstick.kind) {
@@ -66,7 +70,7 @@ export function materialFor(
     case 'previous':
       return previous(mix, past, yardstick.windows, null);
     case 'season':
-      return season(mix, calendar, window, past);
+      return season(mix, calendar, window, { past, recent });
   }
 }
 
@@ -131,38 +135,15 @@ function season(
   mix: MixConfig,
   calendar: Calendar,
   window: Window,
-  past: readonly WindowCounts[],
+  sides: { readonly past: readonly WindowCounts[]; readonly recent: readonly WindowCounts[] },
 ): Material {
-  const { yardstick } = mix;
-  if (yardstick.kind !== 'season') throw new RangeError('season: the mix has another yardstick');
-  const weekStarts = mix.window.kind === 'week' ? mix.window.weekStarts : 'monday';
-  const slotOf = (w: Window): string => calendar.slot(w.startMs, yardstick.cycle, weekStarts);
-  const except = new Set(yardstick.except);
-  const slots = new Map<string, WindowCounts[]>();
-  for (const w of past) {
-    const date = calendar.localDate(w.window.startMs);
-    if (except.has(date)) continue;
-    const slot = slots.get(slotOf(w.window)) ?? [];
-    slots.set(slotOf(w.window), slot);
-    const last = slot.at(-1);
-    // A repeated local hour is one slot: its windows are pooled.
-    if (last !== undefined && calendar.localDate(last.window.startMs) === date) {
-      slot[slot.length - 1] = pool(last, w);
-    } else slot.push(w);
+  const slots = slotsOf(mix, calendar, sides.past);
+  const own = slots.get(slotAt(mix, calendar, window)) ?? [];
+  if (own.length < FEWEST_CYCLES) {
+    const why = 'fewer than two earlier cycles; held against the window before';
+    return previous(mix, sides.recent, 1, why);
   }
-  const kept = [...slots.values()].map((slot) => slot.slice(-yardstick.keep));
-  const own = (slots.get(slotOf(window)) ?? []).slice(-yardstick.keep);
-  if (own.length < 2) {
-    return previous(mix, past, 1, 'fewer than two earlier cycles; held against the window before');
-  }
-  return sampled(mix, merge(own), (bins) => seasonReference(own, kept, bins));
-}
-
-function pool(a: WindowCounts, b: WindowCounts): WindowCounts {
-  return {
-    window: { startMs: a.window.startMs, endMs: b.window.endMs },
-    counts: merge([a, b]),
-  };
+  return sampled(mix, merge(own), (bins) => seasonReference(own, [...slots.values()], bins));
 }
 
 function sampled(
@@ -202,19 +183,4 @@ function optionsOf(mix: MixConfig): {
   pooling: true;
 } {
   return { ordered: mix.ordered, categoriesJudged: mix.limits.categoriesJudged, pooling: true };
-}
-
-/** Sum over windows, categories in code-point order. */
-function merge(windows: readonly { readonly counts: Counts }[]): Counts {
-  const sums = new Map<string, number>();
-  for (const { counts } of windows) {
-    for (const [category, n] of counts) sums.set(category, (sums.get(category) ?? 0) + n);
-  }
-  return new Map([...sums].sort(([a], [b]) => (a < b ? -1 : 1)));
-}
-
-export function total(counts: Counts): number {
-  let n = 0;
-  for (const count of counts.values()) n += count;
-  return n;
 }

@@ -4,6 +4,9 @@ import type { Recipe, Span, UsablePast } from '../terms/recipe.js';
 import type { Window } from '../terms/window.js';
 import { PAIRS } from './reference.js';
 
+/** A rolling baseline reaches back at most this many of its lengths past alarms. */
+const MOST_LENGTHS = 2;
+
 /** A rolling baseline moves this many times on its length. */
 const STEPS_PER_LENGTH = 14;
 
@@ -20,9 +23,14 @@ export function recipeFor(
   past: UsablePast,
   current: Recipe | null,
 ): Recipe {
+  const { yardstick } = mix;
+  if (yardstick.kind === 'pinned') {
+    // Pinned is pinned: no alarm and no new beginning takes anything out of the span.
+    return { step: 0, fromMs: yardstick.fromMs, toMs: yardstick.toMs, excluded: [] };
+  }
   const step = stepOf(mix, calendar, window);
   if (current?.step === step) return current;
-  const span = spanOf(mix, calendar, window);
+  const span = spanOf(mix, calendar, window, past);
   return {
     step,
     fromMs: Math.max(span.fromMs, past.epochMs),
@@ -36,7 +44,7 @@ export function reachMs(mix: MixConfig, calendar: Calendar): number {
   const { yardstick } = mix;
   switch (yardstick.kind) {
     case 'rolling':
-      return yardstick.lastMs + stepMs(mix, calendar);
+      return MOST_LENGTHS * yardstick.lastMs + stepMs(mix, calendar);
     case 'season':
       return (yardstick.keep + 1) * CYCLE_MS[yardstick.cycle] + stepMs(mix, calendar);
     case 'pinned':
@@ -49,15 +57,30 @@ export function reachMs(mix: MixConfig, calendar: Calendar): number {
   }
 }
 
-function spanOf(mix: MixConfig, calendar: Calendar, window: Window): Span {
+function spanOf(mix: MixConfig, calendar: Calendar, window: Window, past: UsablePast): Span {
   const { yardstick } = mix;
-  if (yardstick.kind === 'pinned') return { fromMs: yardstick.fromMs, toMs: yardstick.toMs };
-  const length = yardstick.kind === 'rolling' ? yardstick.lastMs : reachMs(mix, calendar);
-  return { fromMs: window.startMs - length, toMs: window.startMs };
+  const toMs = window.startMs;
+  switch (yardstick.kind) {
+    case 'pinned':
+      return { fromMs: yardstick.fromMs, toMs: yardstick.toMs };
+    case 'rolling':
+      return { fromMs: toMs - rollingLength(yardstick.lastMs, toMs, past), toMs };
+    default:
+      return { fromMs: toMs - reachMs(mix, calendar), toMs };
+  }
+}
+
+/** Time in alarm does not count, or a strand would know too little just after an incident. */
+function rollingLength(lastMs: number, toMs: number, past: UsablePast): number {
+  const farthestMs = toMs - MOST_LENGTHS * lastMs;
+  const inAlarmMs = past.excluded.reduce((sum, span) => {
+    const overlap = Math.min(span.toMs, toMs) - Math.max(span.fromMs, farthestMs);
+    return sum + Math.max(0, overlap);
+  }, 0);
+  return Math.min(MOST_LENGTHS * lastMs, lastMs + inAlarmMs);
 }
 
 function stepOf(mix: MixConfig, calendar: Calendar, window: Window): number {
-  if (mix.yardstick.kind === 'pinned') return 0;
   const windows = Math.max(1, Math.round(stepMs(mix, calendar) / calendar.nominalMs));
   return Math.floor(calendar.ordinal(window.startMs) / windows);
 }
@@ -77,6 +100,6 @@ function stepMs(mix: MixConfig, calendar: Calendar): number {
 }
 
 /** Twice the windows that are wanted, so that gaps and thin windows leave enough pairs. */
-function neighbourReach(calendar: Calendar, n: number): number {
+export function neighbourReach(calendar: Calendar, n: number): number {
   return 2 * (PAIRS + n) * calendar.nominalMs;
 }

@@ -31,17 +31,27 @@ export interface BatchInput {
   readonly alerts: ReadonlyMap<string, Alert>;
   /** Alerts closed because their strand was forgotten, already ended. */
   readonly closed: readonly Alert[];
+  /** Event time at which the windows of a mix could first be judged. */
+  readonly judgeableMs: ReadonlyMap<string, number>;
   readonly past: Past;
   readonly nowMs: number;
   readonly senders: readonly SenderConfig[];
   readonly configDigest: string;
   readonly version: string;
+  /** Lets other work of the process have its turn. */
+  readonly breathe: () => Promise<void>;
 }
+
+/** Strands judged between two breaths: a few milliseconds. */
+const STRANDS_A_BREATH = 16;
 
 /** Judges all strands of a batch as one family and gives everything the round leaves behind. */
 export async function judgeBatch(input: BatchInput): Promise<RoundCommit> {
   const examined: Examined[] = [];
-  for (const subject of input.subjects) examined.push(await examine(subject, input.past));
+  for (const [at, subject] of input.subjects.entries()) {
+    if (at % STRANDS_A_BREATH === 0) await input.breathe();
+    examined.push(await examine(subject, input.past));
+  }
   const { decisions, families } = decide(examined, input);
   const conclusions: Conclusion[] = [];
   for (const one of examined) {
@@ -117,6 +127,7 @@ async function findSince(examined: Examined, past: Past): Promise<Since> {
           unbroken &&
           fromMs !== null &&
           toMs !== null &&
+          total(w.counts) >= plan.mix.limits.minEvents &&
           w.window.startMs >= fromMs &&
           w.window.endMs <= toMs,
       })),
@@ -142,12 +153,6 @@ function assemble(
   const news = [...closed, ...changes].flatMap(({ alert, tell }): News[] =>
     tell === null ? [] : [{ alert, event: tell }],
   );
-  const judgeableMs = new Map(
-    examined.map(({ subject: { plan, window } }) => [
-      plan.mix.name,
-      window.endMs + plan.mix.latenessMs,
-    ]),
-  );
   return {
     batch: { endMs: input.endMs, number: input.number, mixes: input.mixes, families },
     verdicts: examined.map((one, at) => verdictOf(input, one, conclusions[at])),
@@ -158,7 +163,7 @@ function assemble(
     })),
     forgotten: input.forgotten,
     alerts: [...input.closed, ...changes.map((change) => change.alert)],
-    ...outgoing(news, input.senders, { nowMs: input.nowMs, judgeableMs }),
+    ...outgoing(news, input.senders, input),
   };
 }
 

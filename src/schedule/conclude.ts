@@ -70,7 +70,10 @@ function concludeInAlarm(input: ConclusionInput, alarm: Alarm): Conclusion {
   const { examined } = input;
   const { finding, ends } = examined;
   const { memory, changes } = ends === null ? unchanged(examined) : endAlarm(input, alarm, ends);
-  if (finding.kind !== 'tested') return { ...untested(finding), memory, changes };
+  if (finding.kind !== 'tested') {
+    const told = ends === 'returned' ? untested(finding) : untestedInAlarm(finding);
+    return { ...told, memory, changes };
+  }
   const { evidence } = finding.test.tested;
   return ends === 'returned'
     ? { verdict: 'steady', reason: 'back at the reference', evidence, memory, changes }
@@ -116,7 +119,7 @@ function alarmOf(examined: Examined, alert: Alert, since: Since): Alarm {
   const test = finding.kind === 'tested' ? finding.test : null;
   const recipe = memory.alarm?.recipe ?? memory.recipe;
   if (test === null || recipe === null) throw new RangeError('a raise needs a tested window');
-  const { evidence, carriers } = test.tested;
+  const { evidence, carriers, gateTolerance } = test.tested;
   return {
     alertId: alert.id,
     startMs: subject.window.startMs,
@@ -128,7 +131,7 @@ function alarmOf(examined: Examined, alert: Alert, since: Since): Alarm {
     weightReference: evidence.weightReference,
     rho: evidence.rho,
     df2: evidence.df2 ?? null,
-    tolerance: evidence.tolerance,
+    tolerance: gateTolerance,
   };
 }
 
@@ -178,13 +181,20 @@ function restoreFormer(input: ConclusionInput): Pick<Conclusion, 'memory' | 'cha
   };
 }
 
-/** Adds a span in alarm, and drops those that no recipe can reach any more. */
+/**
+ * Adds a span in alarm, and drops those that no recipe can reach any more. The recipe in use may
+ * reach into the span too: a shift can have begun before its last step.
+ */
 function exclude(memory: StrandMemory, span: Span, examined: Examined): StrandMemory {
   const { plan, window } = examined.subject;
-  const pinned = plan.mix.yardstick.kind === 'pinned';
-  const horizonMs = pinned ? -Infinity : window.startMs - reachMs(plan.mix, plan.calendar);
+  const horizonMs = window.startMs - reachMs(plan.mix, plan.calendar);
   const kept = memory.excluded.filter((e) => e.toMs > horizonMs);
-  return { ...memory, excluded: [...kept, span] };
+  const { recipe } = memory;
+  return {
+    ...memory,
+    excluded: [...kept, span],
+    recipe: recipe === null ? null : { ...recipe, excluded: [...recipe.excluded, span] },
+  };
 }
 
 function unchanged(examined: Examined): Pick<Conclusion, 'memory' | 'changes'> {
@@ -196,6 +206,13 @@ function untested(
 ): Pick<Conclusion, 'verdict' | 'reason' | 'evidence'> {
   const verdict = finding.kind === 'untestable' ? 'steady' : finding.kind;
   return { verdict, reason: finding.reason, evidence: null };
+}
+
+/** A window in alarm that cannot be tested, though it has the events, is no sign of an end. */
+function untestedInAlarm(finding: Parameters<typeof untested>[0]): ReturnType<typeof untested> {
+  const told = untested(finding);
+  if (finding.kind === 'thin' || finding.kind === 'silent') return told;
+  return { ...told, verdict: 'shifted', reason: `still in alarm; ${finding.reason}` };
 }
 
 function withThreshold(evidence: Evidence, decision: Decision | null): Evidence {

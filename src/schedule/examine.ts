@@ -61,7 +61,9 @@ export async function examine(subject: Subject, past: Past): Promise<Examined> {
 async function examineAtRest(subject: Subject, past: Past): Promise<Examined> {
   const { plan, window, memory } = subject;
   const recipe = recipeFor(plan.mix, plan.calendar, window, memory, memory.recipe);
-  const finding = await find(subject, () => past.material(plan, subject.strand, window, recipe));
+  const finding = await find(subject, () =>
+    past.material(plan, subject.strand, window, { recipe, untilMs: window.startMs }),
+  );
   return {
     subject,
     memory: { ...memory, recipe },
@@ -73,11 +75,14 @@ async function examineAtRest(subject: Subject, past: Past): Promise<Examined> {
 }
 
 async function examineInAlarm(subject: Subject, alarm: Alarm, past: Past): Promise<Examined> {
-  const { plan, strand, window, memory } = subject;
-  const finding = await find(subject, () => past.material(plan, strand, window, alarm.recipe));
+  const { plan, strand, window, memory, counts } = subject;
+  const finding = await find(subject, () =>
+    past.material(plan, strand, window, { recipe: alarm.recipe, untilMs: alarm.startMs }),
+  );
   const after = await past.run(plan, strand, alarm.endMs, window, longest());
   const ends = hasReturned(alarm, after) ? 'returned' : settles(subject, alarm) ? 'settled' : null;
-  const again = ends === null && looksMoved(finding) ? await testAgain(subject, alarm, past) : null;
+  const movesOn = ends === null && looksMoved(finding) && !hasReturned(alarm, [counts], [1]);
+  const again = movesOn ? await testAgain(subject, alarm, past) : null;
   return { subject, memory, finding, again, ends, backToFormer: false };
 }
 
@@ -138,13 +143,18 @@ function testOn(subject: Subject, material: Material): Finding {
     return { kind: 'learning', reason: 'no past windows to hold it against yet' };
   }
   const bins = material.bins(counts);
-  if (bins.names.length < 2) {
-    return { kind: 'untestable', reason: 'all events fall into one category, before and now' };
-  }
+  if (bins.names.length < 2) return withoutTable(counts, material);
   const reference = material.reference(bins);
   if ('learning' in reference) return { kind: 'learning', reason: reference.learning };
   const { before, declared } = material;
   const { tolerance } = plan.mix;
   const tested = judgeWindow({ counts, before, declared, bins, reference, tolerance });
   return { kind: 'tested', test: { tested, bins, reference } };
+}
+
+function withoutTable(counts: Counts, { before }: Material): Finding {
+  const categories = new Set([...counts.keys(), ...before.keys()]);
+  return categories.size < 2
+    ? { kind: 'untestable', reason: 'all events fall into one category, before and now' }
+    : { kind: 'thin', reason: 'too few events outside the largest category for a test' };
 }

@@ -11,7 +11,8 @@ export interface News {
 
 /**
  * What each sender is asked to deliver. News of a window judged much later than it could have been
- * (after downtime, say) is no longer fresh: it waits for one digest instead of paging anybody.
+ * (after downtime, say) is no longer fresh: it waits for one digest instead of paging anybody, and
+ * so does what is provisional.
  */
 export function outgoing(
   news: readonly News[],
@@ -24,7 +25,7 @@ export function outgoing(
     const age = times.nowMs - (times.judgeableMs.get(alert.mix) ?? times.nowMs);
     for (const sender of senders) {
       const entry = { sender: sender.name, event, createdAtMs: times.nowMs };
-      if (age > sender.freshMs) {
+      if (age > sender.freshMs || alert.provisional) {
         digestEntries.push({ ...entry, alertId: alert.id });
       } else {
         const id = messageId(sender, alert, event);

@@ -1,6 +1,8 @@
 import type { MixConfig } from '../config/types.js';
 import { type Material, materialFor, materialSince, usable } from '../judge/material.js';
+import { neighbourReach } from '../judge/recipe.js';
 import type { WindowCounts } from '../judge/reference.js';
+import { lacksCycles } from '../judge/season.js';
 import type { Store } from '../store/store.js';
 import type { Recipe } from '../terms/recipe.js';
 import type { Counts, StrandKey, Tally } from '../terms/tally.js';
@@ -44,12 +46,15 @@ export class Past {
       .filter(({ counts }) => counts.size > 0);
   }
 
-  /** What a window of the strand is held against by the recipe. */
+  /**
+   * What a window of the strand is held against by the recipe. `untilMs`: where the window before
+   * has to stand in for a cycle, it ends here at the latest.
+   */
   async material(
     plan: MixPlan,
     strand: StrandKey,
     window: Window,
-    recipe: Recipe,
+    { recipe, untilMs }: { readonly recipe: Recipe; readonly untilMs: number },
   ): Promise<Material> {
     const { mix, calendar } = plan;
     const place = JSON.stringify([mix.name, strand]);
@@ -58,11 +63,11 @@ export class Past {
     if (known?.key === key) {
       this.entries.delete(place);
       this.entries.set(place, known);
-      return known.material ?? materialFor(mix, calendar, window, known.past);
+      return known.material ?? this.made(plan, strand, window, { recipe, untilMs }, known.past);
     }
     const windows = await this.windows(plan, strand, recipe.fromMs, recipe.toMs);
     const past = usable(windows, recipe, mix.limits.minEvents);
-    const material = materialFor(mix, calendar, window, past);
+    const material = await this.made(plan, strand, window, { recipe, untilMs }, past);
     this.remember(place, { key, past, material: servesAStep(mix) ? material : null });
     return material;
   }
@@ -96,6 +101,22 @@ export class Past {
     const found = await this.windows(plan, strand, first.startMs, last.endMs);
     const byStart = new Map(found.map((w) => [w.window.startMs, w.counts]));
     return places.reverse().map((w) => byStart.get(w.startMs) ?? NOTHING);
+  }
+
+  /** A season's recipe stands still for days: what lies between it and the window is read here. */
+  private async made(
+    plan: MixPlan,
+    strand: StrandKey,
+    window: Window,
+    { recipe, untilMs }: { readonly recipe: Recipe; readonly untilMs: number },
+    past: readonly WindowCounts[],
+  ): Promise<Material> {
+    const { mix, calendar } = plan;
+    if (!lacksCycles(mix, calendar, window, past)) return materialFor(mix, calendar, window, past);
+    const fromMs = Math.max(recipe.fromMs, untilMs - neighbourReach(calendar, 1));
+    const windows = await this.windows(plan, strand, fromMs, untilMs);
+    const recent = usable(windows, { ...recipe, fromMs, toMs: untilMs }, mix.limits.minEvents);
+    return materialFor(mix, calendar, window, past, recent);
   }
 
   private remember(place: string, entry: Entry): void {

@@ -2,7 +2,7 @@ import type { BudgetShare } from '../alert/budget.js';
 import type { Clock } from '../clock/clock.js';
 import type { Config } from '../config/types.js';
 import type { Store } from '../store/store.js';
-import type { Batch, RoundCommit } from '../terms/round.js';
+import type { Batch, FamilyNote, RoundCommit } from '../terms/round.js';
 import type { Counts, StrandKey } from '../terms/tally.js';
 import type { Window } from '../terms/window.js';
 import { type BatchInput, judgeBatch } from './batch.js';
@@ -19,6 +19,8 @@ export interface RoundsOptions {
   /** Real time: only for how fresh an alert is, never for a verdict. */
   readonly clock: Clock;
   readonly version: string;
+  /** Lets other work of the process have its turn. */
+  readonly breathe: () => Promise<void>;
 }
 
 /** Before any event time. */
@@ -41,12 +43,10 @@ export class Rounds {
   private readonly past: Past;
   private readonly strands: Strands;
   private readonly judged: Map<string, number>;
-  /** Batches of the last instant: their tests count in the family of its later ones. */
-  private latest: Batch[];
 
   private constructor(
     options: RoundsOptions,
-    loaded: { strands: Strands; judged: Map<string, number>; latest: Batch[] },
+    loaded: { strands: Strands; judged: Map<string, number> },
   ) {
     this.options = options;
     this.plans = planMixes(options.config);
@@ -54,7 +54,6 @@ export class Rounds {
     this.past = new Past(options.store);
     this.strands = loaded.strands;
     this.judged = loaded.judged;
-    this.latest = loaded.latest;
   }
 
   /** Reads the state that the last committed round left. */
@@ -63,11 +62,7 @@ export class Rounds {
     await store.keepConfig(config.digest, config.text);
     const alerts = await store.alerts({ open: true });
     const strands = new Strands(await store.strandStates(), alerts);
-    const judged = new Map(await store.judgedTo());
-    const latest: Batch[] = [];
-    const lastMs = Math.max(BEGINNING_MS, ...judged.values());
-    for await (const batch of store.batches(lastMs)) latest.push(batch);
-    return new Rounds(options, { strands, judged, latest });
+    return new Rounds(options, { strands, judged: new Map(await store.judgedTo()) });
   }
 
   /** End of the last judged window of a mix; -Infinity before the first. */
@@ -100,13 +95,17 @@ export class Rounds {
     );
   }
 
-  /** Judges exactly the mixes that a stored batch names, at its instant. */
+  /**
+   * Judges exactly the mixes that a stored batch names, at its instant. Where it notes how many
+   * strands were expected then, that is obeyed: batches are stored by instant, and mixes of
+   * another lateness may have been judged in another order.
+   */
   async replay(batch: Batch): Promise<RoundCommit | null> {
     const named = new Set(batch.mixes);
     const members = (await this.due()).filter(
       ({ plan, window }) => named.has(plan.mix.name) && window.endMs === batch.endMs,
     );
-    return members.length === 0 ? null : this.judge(batch.endMs, members);
+    return members.length === 0 ? null : this.judge(batch.endMs, members, batch.families);
   }
 
   /** The next window of every mix that has one. */
@@ -124,17 +123,49 @@ export class Rounds {
     const { name } = plan.mix;
     const judgedTo = Math.max(BEGINNING_MS, this.judgedTo(name));
     if (this.strands.alive(name) > 0) return plan.calendar.windowAt(judgedTo);
-    return this.options.store.nextWindow(name, judgedTo);
+    const found = await this.options.store.nextWindow(name, judgedTo);
+    // What was counted in windows of another length, before a change, has none of its own.
+    return found === null ? null : plan.calendar.windowAt(found.startMs);
   }
 
-  private async judge(endMs: number, members: readonly Due[]): Promise<RoundCommit> {
-    const earlier = this.latest.filter((batch) => batch.endMs === endMs);
-    const round = await judgeBatch(await this.batchInput(endMs, members, earlier));
+  private async judge(
+    endMs: number,
+    members: readonly Due[],
+    noted: readonly FamilyNote[] = [],
+  ): Promise<RoundCommit> {
+    const earlier = await this.earlier(endMs);
+    const input = await this.batchInput(endMs, members, earlier);
+    const round = await judgeBatch({ ...input, ...this.asNoted(input, noted) });
     await this.options.store.commitRound(round);
     this.strands.apply(round);
     for (const { plan } of members) this.judged.set(plan.mix.name, endMs);
-    this.latest = [...earlier, round.batch];
     return round;
+  }
+
+  /**
+   * The instant's batches so far: their tests count in its family. Later instants may have been
+   * judged since, where mixes differ in lateness or collectors in speed.
+   */
+  private async earlier(endMs: number): Promise<Batch[]> {
+    const found: Batch[] = [];
+    for await (const batch of this.options.store.batches(endMs)) {
+      if (batch.endMs > endMs) break;
+      found.push(batch);
+    }
+    return found;
+  }
+
+  private asNoted(
+    input: BatchInput,
+    noted: readonly FamilyNote[],
+  ): Pick<BatchInput, 'elsewhere' | 'active'> {
+    const elsewhere = new Map(input.elsewhere);
+    const active = new Map(input.active);
+    for (const { budget, expected, tested } of noted) {
+      elsewhere.set(budget, expected - tested);
+      active.set(budget, expected);
+    }
+    return { elsewhere, active };
   }
 
   private async batchInput(
@@ -159,12 +190,14 @@ export class Rounds {
       shares,
       elsewhere: this.perShare((share) => this.elsewhere(share, endMs, members, earlier)),
       active: this.perShare((share) => this.alive(share)),
+      judgeableMs: new Map(members.map(({ plan: { mix } }) => [mix.name, endMs + mix.latenessMs])),
       alerts: this.strands.alerts(),
       past,
       nowMs: options.clock.nowMs(),
       senders: options.config.send,
       configDigest: options.config.digest,
       version: options.version,
+      breathe: options.breathe,
     };
   }
 

@@ -16,6 +16,8 @@ const COPIED: readonly (readonly [table: string, columns: readonly string[]])[] 
   ['windows', ['mix_id', 'start_ms', 'end_ms', 'on_time']],
   ['tallies', ['mix_id', 'start_ms', 'end_ms', 'strand_id', 'counts']],
   ['category_totals', ['mix_id', 'category', 'count']],
+  ['accepted_totals', ['collector', 'count']],
+  ['rejected_totals', ['collector', 'reason', 'count']],
 ];
 
 function copyTable(from: Database, to: Database, table: string, columns: readonly string[]): void {
