@@ -1,6 +1,14 @@
 -- The first tables. Times are epoch milliseconds UTC; counts stay below 2^53, so that they are
 -- exact as JavaScript numbers. Text sorts by code point (BINARY collation over UTF-8).
 
+-- Who this store is, to receivers of its messages; two stores never share a name.
+CREATE TABLE instance (
+  one INTEGER PRIMARY KEY CHECK (one = 1),
+  id TEXT NOT NULL
+) STRICT;
+
+INSERT INTO instance (one, id) VALUES (1, lower(hex(randomblob(16))));
+
 -- Names ---------------------------------------------------------------------------------------
 
 CREATE TABLE mixes (

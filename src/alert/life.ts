@@ -15,6 +15,8 @@ export interface Raise {
   readonly evidence: Evidence;
   /** The alert that this one goes on from. */
   readonly continues: string | null;
+  /** Held against a stand-in for the yardstick that was asked for. */
+  readonly provisional: boolean;
   readonly zone: string;
 }
 
@@ -28,7 +30,7 @@ export function raise(input: Raise): Alert {
     mix,
     strand,
     kind,
-    provisional: evidence.reference.provisional !== null,
+    provisional: input.provisional,
     state: 'unacknowledged',
     raisedAtMs: window.endMs,
     window,
@@ -60,6 +62,7 @@ export function backToFormer(alert: Alert, atMs: number): Alert {
 export function continued(alert: Alert, atMs: number, by: string): Alert {
   const moved =
     alert.ended === null ? end(alert, atMs, 'moved', 'moved', `moved again: ${by}`) : alert;
+  if (moved.state === 'normal') return moved;
   return add({ ...moved, state: 'normal' }, { atMs, event: 'cleared', note: `continued by ${by}` });
 }
 

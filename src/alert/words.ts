@@ -8,7 +8,8 @@ export function percent(share: number): string {
 /** A difference of shares, signed, in percentage points. */
 export function points(difference: number): string {
   const sign = difference < 0 ? '-' : '+';
-  return `${sign}${digits(Math.abs(difference) * 100)} points`;
+  const size = digits(Math.abs(difference) * 100);
+  return `${sign}${size} ${size === '1' ? 'point' : 'points'}`;
 }
 
 /**

@@ -1,4 +1,5 @@
 import { expectedFalseAlarms, familyLevel } from '../alert/budget.js';
+import { grouped } from '../alert/words.js';
 import { formatDuration, formatWindowLength } from '../clock/duration.js';
 import type { MixConfig } from '../config/types.js';
 import { type MixPlan, planMixes } from '../schedule/plan.js';
@@ -32,7 +33,8 @@ export function check(options: CheckOptions, ports: Ports): number {
 function mixText(plan: MixPlan): string {
   const { mix } = plan;
   const split = mix.split.length === 0 ? 'not split' : `split by ${fields(mix)}`;
-  const rounds = short(plan.calendar.perWeek);
+  const { perWeek } = plan.calendar;
+  const rounds = Number.isInteger(perWeek) ? grouped(perWeek) : short(perWeek);
   return (
     `${mix.name}: ${mix.category.join('.')} of ${mix.from}, ${split}, windows of ` +
     `${formatWindowLength(mix.window)}, held against ${yardstickText(mix)}; ` +

@@ -43,6 +43,7 @@ export class Daemon {
   private readonly progress: Progress;
   private beating: Promise<void> | null = null;
   private delivering: Promise<void> | null = null;
+  private deliveryFailure: Error | null = null;
   private caughtUp = false;
   private lastRoundMs: number | null = null;
 
@@ -125,18 +126,16 @@ export class Daemon {
     this.progress.end();
     await this.closeDigests();
     this.caughtUp = true;
-    this.delivering ??= this.deliver().finally(() => {
-      this.delivering = null;
-    });
+    this.deliverBeside();
     this.journal.everyMinute(this.options.ports.clock.nowMs());
   }
 
+  /** All that was there when it began: what a busy writer adds meanwhile is the next beat's. */
   private async catchUp(): Promise<void> {
-    for (let busy = true; busy;) {
-      const pass = await this.engine.pass();
+    let pass = await this.engine.pass({ lookAround: true });
+    while (pass.bytes > 0 || pass.rounds > 0) {
       this.progress.add(pass.bytes);
-      busy = pass.bytes > 0 || pass.rounds > 0;
-      await breathe();
+      pass = await this.engine.pass({ lookAround: false });
     }
     this.tellProblems();
   }
@@ -151,12 +150,24 @@ export class Daemon {
     });
   }
 
+  /** A slow receiver must not hold up the next beat; what fails here fails that beat. */
+  private deliverBeside(): void {
+    if (this.deliveryFailure !== null) throw this.deliveryFailure;
+    this.delivering ??= this.deliver()
+      .catch((error: unknown) => {
+        this.deliveryFailure = error instanceof Error ? error : new Error(String(error));
+      })
+      .finally(() => {
+        this.delivering = null;
+      });
+  }
+
   private async deliver(): Promise<void> {
     const { config, ports } = this.options;
     await deliverDue({
       store: this.parts.store,
       senders: config.send,
-      source: `urn:tallyward:${config.store}`,
+      source: `urn:tallyward:${await this.parts.store.instanceId()}`,
       clock: ports.clock,
       post: postOverHttp,
       random: ports.random,

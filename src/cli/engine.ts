@@ -35,9 +35,14 @@ export class Engine {
     this.options = options;
   }
 
-  /** Reads what is there up to a commit's worth, commits it, judges what is complete. */
-  async pass(): Promise<Pass> {
-    const bytes = await this.read();
+  /**
+   * Reads what is there up to a commit's worth, commits it, judges what is complete. Only with
+   * `lookAround` are new files and growth seen, so that repeating without it comes to an end.
+   */
+  async pass(options: { readonly lookAround: boolean }): Promise<Pass> {
+    // What was found is kept before it is read: it may be renamed while nobody runs.
+    await this.commit();
+    const bytes = await this.read(options.lookAround);
     await this.commit();
     const rounds = await this.judge({ whole: this.options.whole });
     return { bytes, rounds };
@@ -62,14 +67,14 @@ export class Engine {
   }
 
   /** Reads from the collector that is furthest behind, so that memory holds few open windows. */
-  private async read(): Promise<number> {
+  private async read(lookAround: boolean): Promise<number> {
     let bytes = 0;
     const open = new Set(this.options.collectors);
     const looked = new Set<Collector>();
     while (open.size > 0 && bytes < COMMIT_BYTES) {
       const [collector] = [...open].sort((a, b) => behind(a) - behind(b));
       if (collector === undefined) break;
-      const taken = await collector.step({ lookAround: !looked.has(collector) });
+      const taken = await collector.step({ lookAround: lookAround && !looked.has(collector) });
       looked.add(collector);
       bytes += taken;
       if (taken === 0) open.delete(collector);

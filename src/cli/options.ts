@@ -1,4 +1,5 @@
 import { timeParser } from '../clock/time.js';
+import type { Config, MixConfig } from '../config/types.js';
 import { CommandError, EXIT } from './ports.js';
 
 const parseInstant = timeParser({ kind: 'iso' }, 'UTC');
@@ -45,4 +46,12 @@ export function spanOption(options: SpanOptions): QuerySpan {
     ...(fromMs === undefined ? {} : { fromMs }),
     ...(toMs === undefined ? {} : { toMs }),
   };
+}
+
+/** The mix named by --mix, or all of them. */
+export function mixesOf(config: Pick<Config, 'mixes'>, name: string | undefined): MixConfig[] {
+  const mixes = config.mixes.filter((mix) => mix.name === (name ?? mix.name));
+  if (mixes.length > 0) return mixes;
+  const known = config.mixes.map((mix) => mix.name).join(', ');
+  throw new CommandError(`--mix ${name ?? ''}: no such mix; there is ${known}`, EXIT.usage);
 }

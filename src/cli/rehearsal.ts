@@ -53,7 +53,7 @@ export async function rehearseLogs(
     onRound: () => undefined,
   });
   for (let busy = true; busy;) {
-    const pass = await engine.pass();
+    const pass = await engine.pass({ lookAround: false });
     show.add(pass.bytes);
     busy = pass.bytes > 0 || pass.rounds > 0 || !engine.exhausted();
   }
@@ -74,7 +74,7 @@ export async function rehearseTallies(
 ): Promise<void> {
   const batches = await store.copyTalliesFrom(path);
   const rounds = await load(config, store);
-  for (const batch of batches) await rounds.replay({ ...batch, families: [] });
+  for (const batch of batches) await rounds.replay(batch);
 }
 
 /** Sums a rehearsed store up; verdicts and alerts only of windows inside the span. */

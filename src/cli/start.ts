@@ -50,9 +50,9 @@ async function runUntilStopped(
   const failed = new Promise<never>((_resolve, reject) => {
     failure = reject;
   });
-  const heartbeat = cronSchedule(HEARTBEAT, () => daemon.beat().catch(failure), {
-    timezone: 'UTC',
-  });
+  const beat = (): Promise<void> => daemon.beat().catch(failure);
+  const heartbeat = cronSchedule(HEARTBEAT, beat, { timezone: 'UTC' });
+  void beat();
   try {
     await Promise.race([ports.stopAsked, failed]);
     printLine(ports.stdout, 'stopping');

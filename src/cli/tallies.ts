@@ -8,8 +8,8 @@ import type { Store } from '../store/store.js';
 import type { Partition } from '../terms/partition.js';
 import type { Tally } from '../terms/tally.js';
 import { loadConfig } from './loadConfig.js';
-import { type QuerySpan, spanOption, type SpanOptions } from './options.js';
-import { CommandError, EXIT, type Ports } from './ports.js';
+import { mixesOf, type QuerySpan, spanOption, type SpanOptions } from './options.js';
+import { EXIT, type Ports } from './ports.js';
 
 export interface TalliesOptions extends SpanOptions {
   readonly config: string;
@@ -33,21 +33,15 @@ interface TallyRow {
 /** `tallies`: the stored counts, also while the daemon runs; the user's data can always leave. */
 export async function tallies(options: TalliesOptions, ports: Ports): Promise<number> {
   const config = loadConfig(options.config, ports);
-  const mixes = config.mixes.filter((mix) => mix.name === (options.mix ?? mix.name));
-  if (mixes.length === 0) {
-    const known = config.mixes.map((mix) => mix.name).join(', ');
-    throw new CommandError(
-      `--mix ${options.mix ?? ''}: no such mix; there is ${known}`,
-      EXIT.usage,
-    );
-  }
+  const mixes = mixesOf(config, options.mix);
+  const span = spanOption(options);
   const store = await openSqliteStore({ path: config.store, readOnly: true });
   try {
     const waiting = await waitingEvents(
       store,
       config.collectors.map((c) => c.name),
     );
-    const rows = talliesOf(store, mixes, spanOption(options), waiting);
+    const rows = talliesOf(store, mixes, span, waiting);
     await print(rows, options, ports.stdout);
     return EXIT.done;
   } finally {

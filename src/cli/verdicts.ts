@@ -5,7 +5,7 @@ import { verdictData } from '../alert/verdictData.js';
 import { openSqliteStore } from '../store/sqlite/open.js';
 import type { Store } from '../store/store.js';
 import { loadConfig } from './loadConfig.js';
-import { type QuerySpan, spanOption, type SpanOptions } from './options.js';
+import { mixesOf, type QuerySpan, spanOption, type SpanOptions } from './options.js';
 import { EXIT, type Ports, printLine } from './ports.js';
 import { verdictLine } from './verdictLine.js';
 
@@ -18,11 +18,13 @@ export interface VerdictsOptions extends SpanOptions {
 /** `verdicts`: the stored verdicts, a line each; with --json each line is the whole evidence. */
 export async function verdicts(options: VerdictsOptions, ports: Ports): Promise<number> {
   const config = loadConfig(options.config, ports);
-  const store = await openSqliteStore({ path: config.store, readOnly: true });
+  mixesOf(config, options.mix);
   const query = {
     ...spanOption(options),
     ...(options.mix === undefined ? {} : { mix: options.mix }),
   };
+  // Opened last, so that wrong usage is told first and leaves nothing open.
+  const store = await openSqliteStore({ path: config.store, readOnly: true });
   try {
     for await (const verdict of store.verdicts(query)) {
       const line =

@@ -40,7 +40,7 @@ function defaultOf(schema: z.core.$ZodType): string {
   const value = schema.def.defaultValue;
   if (typeof value === 'string') return `\`${value}\``;
   if (Array.isArray(value)) return 'none';
-  return isEmpty(value) ? 'none' : `\`${flow(value)}\``;
+  return isEmpty(value) ? 'its keys below' : `\`${flow(value)}\``;
 }
 
 function isEmpty(value: unknown): boolean {

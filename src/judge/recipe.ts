@@ -28,7 +28,7 @@ export function recipeFor(
     // Pinned is pinned: no alarm and no new beginning takes anything out of the span.
     return { step: 0, fromMs: yardstick.fromMs, toMs: yardstick.toMs, excluded: [] };
   }
-  const step = stepOf(mix, calendar, window);
+  const step = stepOf(mix, calendar, window, past);
   if (current?.step === step) return current;
   const span = spanOf(mix, calendar, window, past);
   return {
@@ -80,9 +80,21 @@ function rollingLength(lastMs: number, toMs: number, past: UsablePast): number {
   return Math.min(MOST_LENGTHS * lastMs, lastMs + inAlarmMs);
 }
 
-function stepOf(mix: MixConfig, calendar: Calendar, window: Window): number {
-  const windows = Math.max(1, Math.round(stepMs(mix, calendar) / calendar.nominalMs));
-  return Math.floor(calendar.ordinal(window.startMs) / windows);
+/** Ordinal of the window at which the step began. */
+function stepOf(mix: MixConfig, calendar: Calendar, window: Window, past: UsablePast): number {
+  const full = Math.max(1, Math.round(stepMs(mix, calendar) / calendar.nominalMs));
+  const windows = mix.yardstick.kind === 'rolling' ? youngStep(full, calendar, window, past) : full;
+  return Math.floor(calendar.ordinal(window.startMs) / windows) * windows;
+}
+
+/**
+ * While a baseline is young its length is its age, and it moves in smaller steps (of 1, 2, 4 ...
+ * windows), so that a new strand is judged as soon as it has windows enough.
+ */
+function youngStep(full: number, calendar: Calendar, window: Window, past: UsablePast): number {
+  const age = (window.startMs - past.epochMs) / calendar.nominalMs;
+  const part = Math.max(1, age / STEPS_PER_LENGTH);
+  return part >= full ? full : 2 ** Math.floor(Math.log2(part));
 }
 
 function stepMs(mix: MixConfig, calendar: Calendar): number {

@@ -9,7 +9,7 @@ import type { Bins } from './bins.js';
 import { binCounts } from './bins.js';
 
 /** Fewest windows, or pairs of windows, from which dispersion is learned. */
-const FEWEST_WINDOWS = 8;
+export const FEWEST_WINDOWS = 8;
 /** Fewest degrees of freedom behind the dispersion with which a window may be judged. */
 const FEWEST_DF2 = 20;
 /** Pairs of neighbouring windows that a dispersion by successive differences looks at. */

@@ -10,7 +10,14 @@ export const FEWEST_CYCLES = 2;
 /** Windows by slot of the cycle, in time order, the newest `keep` of each. */
 type Slots = ReadonlyMap<string, readonly WindowCounts[]>;
 
-const known = new WeakMap<readonly WindowCounts[], Slots>();
+interface Gathered {
+  readonly mix: MixConfig;
+  readonly calendar: Calendar;
+  readonly slots: Slots;
+}
+
+/** Every window of a step asks for the slots of the same past. */
+const known = new WeakMap<readonly WindowCounts[], Gathered>();
 
 /** The slot of a season that a window falls into. */
 export function slotAt(mix: MixConfig, calendar: Calendar, window: Window): string {
@@ -19,14 +26,12 @@ export function slotAt(mix: MixConfig, calendar: Calendar, window: Window): stri
 }
 
 /** Past windows by slot. Days that the configuration excepts have no part in it. */
-export function slotsOf(
-  mix: MixConfig,
-  calendar: Calendar,
-  past: readonly WindowCounts[],
-): Slots {
-  const found = known.get(past) ?? gather(mix, calendar, past);
-  known.set(past, found);
-  return found;
+export function slotsOf(mix: MixConfig, calendar: Calendar, past: readonly WindowCounts[]): Slots {
+  const found = known.get(past);
+  if (found?.mix === mix && found.calendar === calendar) return found.slots;
+  const slots = gather(mix, calendar, past);
+  known.set(past, { mix, calendar, slots });
+  return slots;
 }
 
 /** Whether the mix is a season in which the window's slot has no reference yet. */
@@ -67,10 +72,10 @@ function pool(a: WindowCounts, b: WindowCounts): WindowCounts {
   };
 }
 
-function seasonOf({ name, yardstick }: MixConfig): Extract<
-  MixConfig['yardstick'],
-  { kind: 'season' }
-> {
+function seasonOf({
+  name,
+  yardstick,
+}: MixConfig): Extract<MixConfig['yardstick'], { kind: 'season' }> {
   if (yardstick.kind !== 'season') throw new RangeError(`mix ${name} has no season`);
   return yardstick;
 }

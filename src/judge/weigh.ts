@@ -5,7 +5,7 @@ import type { Counts } from '../terms/tally.js';
 import { type Bins, binCounts, binsByMargins, binsByShares } from './bins.js';
 import { type Description, describe, sharesOf } from './compare.js';
 import { compareWindow } from './judgeWindow.js';
-import { total } from './material.js';
+import { total } from './counts.js';
 import { baselineReference, type WindowCounts } from './reference.js';
 
 export interface WeighInput {

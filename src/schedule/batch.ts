@@ -1,11 +1,8 @@
 import { type BudgetShare } from '../alert/budget.js';
 import { decideFamily, type FamilyOutcome } from '../alert/decideFamily.js';
-import { SINCE_WINDOWS, sinceWhen } from '../alert/since.js';
 import type { SenderConfig } from '../config/types.js';
-import { binCounts } from '../judge/bins.js';
-import { total } from '../judge/material.js';
-import type { Alert, Since } from '../terms/alert.js';
-import type { StrandMemory } from '../terms/recipe.js';
+import { total } from '../judge/counts.js';
+import type { Alert } from '../terms/alert.js';
 import type { FamilyNote, RoundCommit } from '../terms/round.js';
 import type { StrandKey } from '../terms/tally.js';
 import type { Verdict } from '../terms/verdict.js';
@@ -13,6 +10,7 @@ import { conclude, type Conclusion, type Decision, familyTest, raises } from './
 import { type Examined, examine, type Subject } from './examine.js';
 import { type News, outgoing } from './outgoing.js';
 import type { Past } from './past.js';
+import { findSince } from './start.js';
 
 /** Everything that judging one batch depends on. */
 export interface BatchInput {
@@ -95,51 +93,6 @@ function decideShare(
     elsewhere: input.elsewhere.get(share.budget) ?? 0,
     active: input.active.get(share.budget) ?? 0,
   });
-}
-
-/** Looks for the start of a shift in the strand's last windows, back to its last alarm's end. */
-async function findSince(examined: Examined, past: Past): Promise<Since> {
-  const { subject, memory } = examined;
-  const { plan, strand, window } = subject;
-  const test = familyTest(examined);
-  if (test === null) throw new RangeError('only a tested window has a start to look for');
-  const { reference, bins } = test;
-  const { fromMs, toMs, yardstick } = reference.note;
-  // The slots of a season lie apart: what stands between them is no part of the reference.
-  const unbroken = yardstick === 'baseline' || yardstick === 'previous';
-  // What differs from the reference began in it or after it; what was before is another matter.
-  const referenceStartMs = yardstick === 'baseline' ? (fromMs ?? -Infinity) : -Infinity;
-  const earliestMs = Math.max(memory.alarm?.endMs ?? lastEndMs(memory), referenceStartMs);
-  let first = window;
-  for (let at = 1; at < SINCE_WINDOWS; at++) {
-    const before = plan.calendar.previous(first);
-    if (before.startMs < earliestMs) break;
-    first = before;
-  }
-  const windows = await past.windows(plan, strand, first.startMs, window.endMs);
-  return sinceWhen({
-    windows: windows
-      .filter((w) => total(w.counts) > 0)
-      .map((w) => ({
-        window: w.window,
-        counts: binCounts(w.counts, bins),
-        inReference:
-          unbroken &&
-          fromMs !== null &&
-          toMs !== null &&
-          total(w.counts) >= plan.mix.limits.minEvents &&
-          w.window.startMs >= fromMs &&
-          w.window.endMs <= toMs,
-      })),
-    shares: reference.shares,
-    weight: reference.weight,
-    rho: reference.rho,
-  });
-}
-
-/** End of the strand's last alarm, or the beginning of its present mix. */
-function lastEndMs(memory: StrandMemory): number {
-  return Math.max(memory.epochMs, ...memory.excluded.map((span) => span.toMs));
 }
 
 function assemble(

@@ -87,6 +87,8 @@ function concludeRaise(input: ConclusionInput): Conclusion {
   if (test === null || since === null) throw new RangeError('a raise needs its test and its start');
   const evidence = withThreshold(test.tested.evidence, decision);
   const formerId = memory.alarm?.alertId ?? memory.returnedAlertId;
+  const former = formerId === null ? undefined : alerts.get(formerId);
+  const onProvisional = memory.alarm !== null && former?.provisional === true;
   const alert = raise({
     mix: subject.plan.mix.name,
     strand: subject.strand,
@@ -94,10 +96,10 @@ function concludeRaise(input: ConclusionInput): Conclusion {
     window: subject.window,
     since,
     evidence,
-    continues: formerId,
+    continues: former?.id ?? null,
+    provisional: evidence.reference.provisional !== null || onProvisional,
     zone: subject.plan.mix.zone,
   });
-  const former = formerId === null ? undefined : alerts.get(formerId);
   const tell = memory.alarm === null ? 'raised' : 'moved';
   const changes = [
     ...(former === undefined
@@ -145,19 +147,20 @@ function endAlarm(
   const alert = input.alerts.get(alarm.alertId);
   if (alert === undefined) throw new RangeError(`alert ${alarm.alertId} is not stored`);
   const waits = alert.state === 'acknowledged' ? null : alert.id;
+  const told = how === 'settled' ? settled(alert, atMs) : returned(alert, atMs, '');
+  const changes = [{ alert: told, tell: how }];
+  if (alert.provisional) {
+    // A season not known yet looks like shifts: were they left out, it would never be known.
+    return { memory: { ...memory, alarm: null, returnedAlertId: waits }, changes };
+  }
   if (how === 'settled') {
     const former = { epochMs: memory.epochMs, excluded: memory.excluded, alarm };
     const next = { ...memory, alarm: null, former, returnedAlertId: waits, recipe: null };
-    return {
-      memory: { ...next, epochMs: alarm.startMs, excluded: [] },
-      changes: [{ alert: settled(alert, atMs), tell: 'settled' }],
-    };
+    return { memory: { ...next, epochMs: alarm.startMs, excluded: [] }, changes };
   }
   const next = { ...memory, alarm: null, returnedAlertId: waits };
-  return {
-    memory: exclude(next, { fromMs: alarm.sinceEarliestMs, toMs: atMs }, input.examined),
-    changes: [{ alert: returned(alert, atMs, ''), tell: 'returned' }],
-  };
+  const span = { fromMs: alarm.sinceEarliestMs, toMs: atMs };
+  return { memory: exclude(next, span, input.examined), changes };
 }
 
 /** The reference before the shift that settled is put back; the time between never enters one. */

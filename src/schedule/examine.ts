@@ -1,9 +1,10 @@
 import { hasReturned, RETURN_LENGTHS } from '../alert/returned.js';
 import type { Bins } from '../judge/bins.js';
 import { judgeWindow, type Tested } from '../judge/judgeWindow.js';
-import { type Material, total } from '../judge/material.js';
+import { total } from '../judge/counts.js';
+import type { Material } from '../judge/material.js';
 import { recipeFor } from '../judge/recipe.js';
-import type { Reference } from '../judge/reference.js';
+import { FEWEST_WINDOWS, type Reference } from '../judge/reference.js';
 import type { Alarm, StrandMemory } from '../terms/recipe.js';
 import type { Counts, StrandKey } from '../terms/tally.js';
 import type { Window } from '../terms/window.js';
@@ -80,8 +81,13 @@ async function examineInAlarm(subject: Subject, alarm: Alarm, past: Past): Promi
     past.material(plan, strand, window, { recipe: alarm.recipe, untilMs: alarm.startMs }),
   );
   const after = await past.run(plan, strand, alarm.endMs, window, longest());
-  const ends = hasReturned(alarm, after) ? 'returned' : settles(subject, alarm) ? 'settled' : null;
-  const movesOn = ends === null && looksMoved(finding) && !hasReturned(alarm, [counts], [1]);
+  const returned = hasReturned(alarm, after);
+  const settled = !returned && (await settles(subject, alarm, past));
+  const ends = returned ? 'returned' : settled ? 'settled' : null;
+  // The windows since the raise lie in other slots of a season: the cycle itself would move.
+  const comparable = plan.mix.yardstick.kind !== 'season';
+  const away = looksMoved(finding) && !hasReturned(alarm, [counts], [1]);
+  const movesOn = ends === null && comparable && away;
   const again = movesOn ? await testAgain(subject, alarm, past) : null;
   return { subject, memory, finding, again, ends, backToFormer: false };
 }
@@ -97,11 +103,18 @@ async function testAgain(subject: Subject, alarm: Alarm, past: Past): Promise<Te
   return finding.kind === 'tested' ? finding.test : null;
 }
 
-/** A rolling reference takes a lasting shift over; a pinned or declared one never by itself. */
-function settles(subject: Subject, alarm: Alarm): boolean {
-  const { kind } = subject.plan.mix.yardstick;
+/**
+ * A rolling reference takes a lasting shift over; a pinned or declared one never by itself. Silence
+ * is not lasting: the new mix must have the windows that make a reference.
+ */
+async function settles(subject: Subject, alarm: Alarm, past: Past): Promise<boolean> {
+  const { plan, strand, window } = subject;
+  const { kind } = plan.mix.yardstick;
   const moves = kind === 'rolling' || kind === 'previous' || kind === 'season';
-  return moves && subject.window.endMs - alarm.endMs >= subject.plan.settleMs;
+  if (!moves || window.endMs - alarm.endMs < plan.settleMs) return false;
+  const since = await past.windows(plan, strand, alarm.startMs, window.endMs);
+  const full = since.filter(({ counts }) => total(counts) >= plan.mix.limits.minEvents);
+  return full.length >= FEWEST_WINDOWS;
 }
 
 /**

@@ -16,7 +16,7 @@ interface Entry {
   readonly key: string;
   readonly past: readonly WindowCounts[];
   /** Kept where one material serves every window of the step. */
-  readonly material: Material | null;
+  material: Material | null;
 }
 
 /** Reads the past of strands from stored tallies, and remembers what a whole step shares. */
@@ -57,19 +57,25 @@ export class Past {
     { recipe, untilMs }: { readonly recipe: Recipe; readonly untilMs: number },
   ): Promise<Material> {
     const { mix, calendar } = plan;
-    const place = JSON.stringify([mix.name, strand]);
-    const key = JSON.stringify(recipe);
-    const known = this.entries.get(place);
-    if (known?.key === key) {
-      this.entries.delete(place);
-      this.entries.set(place, known);
-      return known.material ?? this.made(plan, strand, window, { recipe, untilMs }, known.past);
+    const entry = await this.entry(plan, strand, recipe);
+    if (!servesAStep(mix)) {
+      return this.made(plan, strand, window, { recipe, untilMs }, entry.past);
     }
-    const windows = await this.windows(plan, strand, recipe.fromMs, recipe.toMs);
-    const past = usable(windows, recipe, mix.limits.minEvents);
-    const material = await this.made(plan, strand, window, { recipe, untilMs }, past);
-    this.remember(place, { key, past, material: servesAStep(mix) ? material : null });
-    return material;
+    entry.material ??= materialFor(mix, calendar, window, entry.past);
+    return entry.material;
+  }
+
+  /** Usual counts of a window's slot in a season; null where it has no reference of its own. */
+  async slot(
+    plan: MixPlan,
+    strand: StrandKey,
+    window: Window,
+    recipe: Recipe,
+  ): Promise<Counts | null> {
+    const { mix, calendar } = plan;
+    const { past } = await this.entry(plan, strand, recipe);
+    if (lacksCycles(mix, calendar, window, past)) return null;
+    return materialFor(mix, calendar, window, past).before;
   }
 
   /** The windows since a shift was raised, up to a window, as a reference of their own. */
@@ -117,6 +123,22 @@ export class Past {
     const windows = await this.windows(plan, strand, fromMs, untilMs);
     const recent = usable(windows, { ...recipe, fromMs, toMs: untilMs }, mix.limits.minEvents);
     return materialFor(mix, calendar, window, past, recent);
+  }
+
+  private async entry(plan: MixPlan, strand: StrandKey, recipe: Recipe): Promise<Entry> {
+    const place = JSON.stringify([plan.mix.name, strand]);
+    const key = JSON.stringify(recipe);
+    const known = this.entries.get(place);
+    if (known?.key === key) {
+      this.entries.delete(place);
+      this.entries.set(place, known);
+      return known;
+    }
+    const windows = await this.windows(plan, strand, recipe.fromMs, recipe.toMs);
+    const past = usable(windows, recipe, plan.mix.limits.minEvents);
+    const entry = { key, past, material: null };
+    this.remember(place, entry);
+    return entry;
   }
 
   private remember(place: string, entry: Entry): void {

@@ -119,6 +119,9 @@ export interface Store {
   /** Replaces the first `entries` of the message's sender by the message, in one transaction. */
   closeDigest(message: Message, entries: number): Promise<void>;
 
+  /** 32 hex digits drawn when the store was made: who it is to receivers of its messages. */
+  instanceId(): Promise<string>;
+
   // Upkeep -------------------------------------------------------------------------------------
   bytes(): Promise<number>;
   close(): Promise<void>;

@@ -1,12 +1,9 @@
 import type { Database } from 'better-sqlite3';
-import type { Batch } from '../../terms/round.js';
+import type { Batch, FamilyNote } from '../../terms/round.js';
 import { StoreError } from '../store.js';
 import { openConnection, type SqliteOptions } from './connection.js';
 import { explainError } from './errors.js';
 import { fromJson } from './json.js';
-
-/** Which mixes were judged together, and in which order: what replay must obey. */
-export type BatchNote = Pick<Batch, 'endMs' | 'number' | 'mixes'>;
 
 /** What is copied, in an order in which no row refers to a later one. */
 const COPIED: readonly (readonly [table: string, columns: readonly string[]])[] = [
@@ -29,13 +26,18 @@ function copyTable(from: Database, to: Database, table: string, columns: readonl
   for (const row of rows.iterate()) insert.run(...row);
 }
 
-function readBatchNotes(from: Database): readonly BatchNote[] {
+/** Which mixes were judged together, and allowing for how many strands: what replay must obey. */
+function readBatches(from: Database): readonly Batch[] {
   return from
-    .prepare<[], { endMs: number; number: number; mixes: string }>(
-      'SELECT end_ms AS endMs, number, mixes FROM batches ORDER BY end_ms, number',
+    .prepare<[], { endMs: number; number: number; mixes: string; families: string }>(
+      'SELECT end_ms AS endMs, number, mixes, families FROM batches ORDER BY end_ms, number',
     )
     .all()
-    .map((row) => ({ ...row, mixes: fromJson(row.mixes) as readonly string[] }));
+    .map((row) => ({
+      ...row,
+      mixes: fromJson(row.mixes) as readonly string[],
+      families: fromJson(row.families) as readonly FamilyNote[],
+    }));
 }
 
 /**
@@ -45,7 +47,7 @@ function readBatchNotes(from: Database): readonly BatchNote[] {
  *
  * @throws StoreError when the source cannot be read or is not up to date, or `to` is not empty
  */
-export function copyRows(source: SqliteOptions, to: Database): readonly BatchNote[] {
+export function copyRows(source: SqliteOptions, to: Database): readonly Batch[] {
   if (to.prepare('SELECT 1 FROM mixes LIMIT 1').get() !== undefined) {
     throw new StoreError(
       `tallies of ${source.path} can only be copied into an empty store; open a new one`,
@@ -55,7 +57,7 @@ export function copyRows(source: SqliteOptions, to: Database): readonly BatchNot
   try {
     const copy = from.transaction(() => {
       for (const [table, columns] of COPIED) copyTable(from, to, table, columns);
-      return readBatchNotes(from);
+      return readBatches(from);
     });
     return copy();
   } catch (error) {

@@ -1,9 +1,10 @@
 import { statSync } from 'node:fs';
+import type { Batch } from '../../terms/round.js';
 import type { Store } from '../store.js';
 import { alertMethods } from './alerts.js';
 import { configMethods } from './configs.js';
 import { openConnection, type SqliteOptions } from './connection.js';
-import { copyRows, type BatchNote } from './copy.js';
+import { copyRows } from './copy.js';
 import { countingMethods } from './counting.js';
 import { outboxMethods } from './outbox.js';
 import { roundMethods } from './rounds.js';
@@ -12,12 +13,18 @@ import { tallyMethods } from './tallies.js';
 import { totalsMethods } from './totals.js';
 import { verdictMethods } from './verdicts.js';
 
-export type { BatchNote, SqliteOptions };
+export type { SqliteOptions };
 
 /** The embedded form of the store. */
 export interface SqliteStore extends Store {
-  /** See `copyTallies`. */
-  copyTalliesFrom(path: string): Promise<readonly BatchNote[]>;
+  /**
+   * Copies the stored tallies of another database file into this store, which must be empty, for
+   * replaying them. The source is only read and may be in use by a running daemon.
+   *
+   * @returns the batches of the source's rounds, in order of (endMs, number)
+   * @throws StoreError when the source cannot be read, or this store is not empty
+   */
+  copyTalliesFrom(path: string): Promise<readonly Batch[]>;
 }
 
 function upkeepMethods({ db, path, read }: Session): Pick<Store, 'bytes' | 'close'> {
@@ -57,17 +64,4 @@ export function openSqliteStore(options: SqliteOptions): Promise<SqliteStore> {
         session.write('copy tallies', () => copyRows({ ...options, path }, db)),
     });
   });
-}
-
-/**
- * Copies the stored tallies of another database file into an empty store, for replaying them.
- * The source is opened read-only and may be in use by a running daemon.
- *
- * @param fromPath the database file to read
- * @param toStore an empty store, e.g. one in memory
- * @returns the batches of the source's rounds, in order of (endMs, number)
- * @throws StoreError when the source cannot be read, or the target is not empty
- */
-export function copyTallies(fromPath: string, toStore: SqliteStore): Promise<readonly BatchNote[]> {
-  return toStore.copyTalliesFrom(fromPath);
 }

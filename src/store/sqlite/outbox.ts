@@ -109,7 +109,8 @@ function digestMethods(session: Session): Pick<Store, 'digestEntries' | 'closeDi
   };
 }
 
-type OutboxMethod = keyof Attempts | 'waitingSenders' | 'waiting' | 'digestEntries' | 'closeDigest';
+type OutboxMethod =
+  keyof Attempts | 'waitingSenders' | 'waiting' | 'digestEntries' | 'closeDigest' | 'instanceId';
 
 export function outboxMethods(session: Session): Pick<Store, OutboxMethod> {
   const senders = session.db
@@ -122,9 +123,11 @@ export function outboxMethods(session: Session): Pick<Store, OutboxMethod> {
     `SELECT body, attempts, next_attempt_ms AS nextAttemptMs FROM messages
      WHERE state = 'due' AND sender = ? ORDER BY created_at_ms, sequence LIMIT ?`,
   );
+  const instance = session.db.prepare<[], string>('SELECT id FROM instance').pluck();
   return {
     ...attemptMethods(session),
     ...digestMethods(session),
+    instanceId: () => session.read('read the instance', () => instance.get() ?? ''),
     waitingSenders: () => session.read('read the outbox', () => senders.all()),
     waiting: (sender, limit) =>
       session.read('read the outbox', () =>

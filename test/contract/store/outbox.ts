@@ -98,6 +98,14 @@ export function outboxContract(open: Open): void {
     expect(await listOf(store.batches())).toHaveLength(1);
   });
 
+  it('keeps the name it was given when it was made', async () => {
+    const opened = await begin(open);
+    const name = await opened.store.instanceId();
+    expect(name).toMatch(/^[0-9a-f]{32}$/);
+    const store = await restarted(opened);
+    expect(await store.instanceId()).toBe(name);
+  });
+
   it('grows with what is stored', async () => {
     const { store } = await begin(open);
     const before = await store.bytes();

@@ -3,7 +3,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import Database from 'better-sqlite3';
 import { describe, expect, it, onTestFinished } from 'vitest';
-import { copyTallies, openSqliteStore, type SqliteStore } from '../../../src/store/sqlite/open.js';
+import { openSqliteStore, type SqliteStore } from '../../../src/store/sqlite/open.js';
 import type { Opened } from './opened.js';
 import { storeContract } from './suite.js';
 import { alert, batchOf, listOf, memory, MINUTE, round, T0, tally, verdict } from './values.js';
@@ -106,11 +106,8 @@ describe('copying tallies', () => {
     await store.commitRound(round(0, judged));
 
     const copy = await openSqliteStore({ path: ':memory:' });
-    const batches = await copyTallies(path, copy);
-    expect(batches).toEqual([
-      { endMs: T0 + MINUTE, number: 0, mixes: ['m'] },
-      { endMs: T0 + 2 * MINUTE, number: 0, mixes: ['m', 'n'] },
-    ]);
+    const batches = await copy.copyTalliesFrom(path);
+    expect(batches).toEqual([round(0).batch, { ...round(1).batch, mixes: ['m', 'n'] }]);
     const tallies = await listOf(store.tallies({ mix: 'm' }));
     expect(await listOf(copy.tallies({ mix: 'm' }))).toEqual(tallies);
     expect(await copy.nextWindow('m', T0 + 1)).toEqual(north.window);
@@ -128,9 +125,9 @@ describe('copying tallies', () => {
   it('refuses a store that has something, and a source that is not there', async () => {
     const { path, store } = await fileWithReaders();
     const copy = await openSqliteStore({ path: ':memory:' });
-    await expect(copyTallies(`${path}.not`, copy)).rejects.toThrow(/there is no store/);
+    await expect(copy.copyTalliesFrom(`${path}.not`)).rejects.toThrow(/there is no store/);
     await copy.commitCounts(batchOf([tally(0, { a: 1 })]));
-    await expect(copyTallies(path, copy)).rejects.toThrow(/only be copied into an empty store/);
+    await expect(copy.copyTalliesFrom(path)).rejects.toThrow(/only be copied into an empty store/);
     expect(await listOf(store.tallies({ mix: 'm' }))).toEqual([]);
     await copy.close();
   });
