@@ -48,6 +48,7 @@ export async function weigh(
 }
 
 function testOf(options: WeighOptions): Parameters<typeof weighSamples>[0]['test'] {
+  refuseIdleOptions(options);
   if (options.monteCarlo === undefined) return options.exact === true ? 'exact' : 'auto';
   if (options.exact === true) {
     throw new CommandError('--exact and --monte-carlo exclude each other; give one', EXIT.usage);
@@ -59,6 +60,29 @@ function testOf(options: WeighOptions): Parameters<typeof weighSamples>[0]['test
     samples: wholeOption('--monte-carlo', options.monteCarlo, { least: 99, most: 10_000_000 }),
     seed: wholeOption('--seed', options.seed, { least: 0, most: 4_294_967_295 }),
   };
+}
+
+/** An option that would have no effect is a misunderstanding, and told. */
+function refuseIdleOptions(options: WeighOptions): void {
+  const given = options.exact === true || options.monteCarlo !== undefined;
+  if (given && options.declared === true) {
+    throw new CommandError(
+      '--exact and --monte-carlo need two samples; leave out --declared',
+      EXIT.usage,
+    );
+  }
+  if (given && options.window !== undefined) {
+    throw new CommandError(
+      '--exact and --monte-carlo take events as independent, --window does not; give one',
+      EXIT.usage,
+    );
+  }
+  if (options.window !== undefined && options.category === undefined) {
+    throw new CommandError('--window needs logs; name their field with --category', EXIT.usage);
+  }
+  if (options.window !== undefined && options.declared === true) {
+    throw new CommandError('--window needs a sample, not declared shares; give one', EXIT.usage);
+  }
 }
 
 /** What the samples do not allow is the user's to mend, and told as such. */

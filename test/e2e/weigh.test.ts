@@ -124,7 +124,7 @@ async function weigh(
 
 const party = samplesOf(check('agresti-2007-party'));
 
-describe('weigh on published tables', () => {
+describe.concurrent('weigh on published tables', () => {
   it.for(tables)(
     'when given %s as CSV, prints its published values',
     async ([id, readings], { place }) => {
@@ -178,7 +178,7 @@ describe('weigh on published tables', () => {
   });
 });
 
-describe('weigh --monte-carlo', () => {
+describe.concurrent('weigh --monte-carlo', () => {
   it('when the seed is the same, prints the same bytes, and comes near the exact p', async ({
     place,
   }) => {
@@ -196,7 +196,7 @@ describe('weigh --monte-carlo', () => {
   });
 });
 
-describe('exit status of weigh', () => {
+describe.concurrent('exit status of weigh', () => {
   it('when --fail-on-shift is above p, is 1, and the comparison is printed all the same', async ({
     place,
   }) => {
@@ -244,7 +244,7 @@ function hourly(hours: readonly (readonly number[])[], fromMs = startMs): string
 const log = ['--category', 'parcel.outcome'];
 const windows = [...log, '--time', 'ts', '--window', '1h'];
 
-describe('weigh on logs', () => {
+describe.concurrent('weigh on logs', () => {
   it('when the samples are logs, counts their category as a CSV of the same counts', async ({
     place,
   }) => {
@@ -341,6 +341,21 @@ const usage: readonly (readonly [what: string, args: readonly string[], says: Re
     /exclude each other; give one/,
   ],
   [
+    'an exact p is asked for against declared shares',
+    ['before.csv', 'after.csv', '--declared', '--exact'],
+    /need two samples; leave out --declared/,
+  ],
+  [
+    'an exact p is asked for with windows',
+    ['log.ndjson', 'log.ndjson', ...windows, '--exact'],
+    /--window does not; give one/,
+  ],
+  [
+    'windows are asked for of counts',
+    ['before.csv', 'after.csv', '--time', 'ts', '--window', '1h'],
+    /--window needs logs/,
+  ],
+  [
     'sampling has no seed',
     ['before.csv', 'after.csv', '--monte-carlo', '999'],
     /--monte-carlo needs --seed/,
@@ -380,7 +395,7 @@ const usage: readonly (readonly [what: string, args: readonly string[], says: Re
   ['a count is negative', ['before.csv', 'negative.csv'], /^negative\.csv: line 2 has a count/m],
 ];
 
-describe('wrong usage of weigh', () => {
+describe.concurrent('wrong usage of weigh', () => {
   it.for(usage)(
     'when %s, exits 2 and says what to write, without a trace',
     async ([, args, says], { place }) => {
