@@ -25,6 +25,11 @@ export function chance(logP: number): string {
   return `about once in ${grouped(Math.round(times / scale) * scale)} windows`;
 }
 
+/** `1 window`, `2,016 windows`: for nouns whose plural takes an s. */
+export function counted(n: number, noun: string): string {
+  return `${grouped(n)} ${n === 1 ? noun : `${noun}s`}`;
+}
+
 /** Whole numbers with a comma between thousands. */
 export function grouped(n: number): string {
   return String(Math.round(n)).replace(/\B(?=(\d{3})+$)/g, ',');

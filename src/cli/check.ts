@@ -1,5 +1,5 @@
 import { expectedFalseAlarms, familyLevel } from '../alert/budget.js';
-import { grouped } from '../alert/words.js';
+import { counted } from '../alert/words.js';
 import { formatDuration, formatWindowLength } from '../clock/duration.js';
 import type { MixConfig } from '../config/types.js';
 import { type MixPlan, planMixes } from '../schedule/plan.js';
@@ -34,11 +34,11 @@ function mixText(plan: MixPlan): string {
   const { mix } = plan;
   const split = mix.split.length === 0 ? 'not split' : `split by ${fields(mix)}`;
   const { perWeek } = plan.calendar;
-  const rounds = Number.isInteger(perWeek) ? grouped(perWeek) : short(perWeek);
+  const rounds = Number.isInteger(perWeek) ? counted(perWeek, 'round') : `${short(perWeek)} rounds`;
   return (
     `${mix.name}: ${mix.category.join('.')} of ${mix.from}, ${split}, windows of ` +
     `${formatWindowLength(mix.window)}, held against ${yardstickText(mix)}; ` +
-    `${rounds} rounds a week, each at level ${short(levelOf(plan))}; ` +
+    `${rounds} a week, each at level ${short(levelOf(plan))}; ` +
     `a window closes ${formatDuration(mix.latenessMs)} after its end`
   );
 }

@@ -1,4 +1,4 @@
-import { grouped } from '../alert/words.js';
+import { counted, grouped } from '../alert/words.js';
 import { formatInstant } from '../clock/format.js';
 import type { RoundCommit } from '../terms/round.js';
 import type { VerdictName } from '../terms/verdict.js';
@@ -48,7 +48,7 @@ export class Journal {
   summary(nowMs: number): void {
     const parts = [...this.counts].map(([verdict, n]) => `${grouped(n)} ${verdict}`);
     const closed = [...this.counts.values()].reduce((a, b) => a + b, 0);
-    const text = closed === 0 ? 'no window closed' : `${grouped(closed)} windows closed: `;
+    const text = closed === 0 ? 'no window closed' : `${counted(closed, 'window')} closed: `;
     printLine(this.ports.stdout, `${formatInstant(nowMs)}  ${text}${parts.join(', ')}`);
     this.counts = new Map();
     this.lastSummaryMs = nowMs;

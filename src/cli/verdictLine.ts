@@ -1,5 +1,5 @@
 import { placeName } from '../alert/sentence.js';
-import { grouped } from '../alert/words.js';
+import { counted } from '../alert/words.js';
 import { formatInstant } from '../clock/format.js';
 import type { Verdict } from '../terms/verdict.js';
 
@@ -8,6 +8,6 @@ export function verdictLine(verdict: Verdict): string {
   const { startMs, endMs } = verdict.window;
   const span = `${formatInstant(startMs)} to ${formatInstant(endMs)}`;
   const place = placeName(verdict.mix, verdict.strand);
-  const events = `${grouped(verdict.events)} events`;
+  const events = counted(verdict.events, 'event');
   return `${span}  ${verdict.verdict}  ${place}  ${events}: ${verdict.reason}`;
 }

@@ -1,5 +1,6 @@
 import { createHash } from 'node:crypto';
 
+import { counted } from '../alert/words.js';
 import type { Clock } from '../clock/clock.js';
 import type { SenderConfig } from '../config/types.js';
 import type { Store } from '../store/store.js';
@@ -61,9 +62,7 @@ async function digestMessage(
 ): Promise<Message> {
   const { first, entries } = what;
   const { listed, total, raised, open } = await gather(entries, what.store);
-  const head =
-    `while Tallyward was away: ${raised} ${raised === 1 ? 'shift' : 'shifts'}, ` +
-    `${open} still open`;
+  const head = `while Tallyward was away: ${counted(raised, 'shift')}, ` + `${open} still open`;
   const more = total > listed.length ? [`and ${total - listed.length} more`] : [];
   return {
     id: digestId(sender.name, first),
