@@ -1,5 +1,5 @@
 import type { ExactResult } from './exactTable.js';
-import { logPoisson } from './logPoisson.js';
+import { logPoissonMass } from './logPoissonMass.js';
 import { addLog, emptyLogSum, logOfSum } from './logSum.js';
 import type { LogSum } from './logSum.js';
 import { multinomialClosing } from './multinomialClosing.js';
@@ -23,7 +23,7 @@ export type MultinomialResult =
     };
 
 /** Ways to have filled the bins so far, with one distance: their summed probability's log. */
-export interface PartialOutcome {
+interface PartialOutcome {
   readonly cost: number;
   log: number;
 }
@@ -48,12 +48,12 @@ interface Walk {
  * Mehta & Patel 1983, from memory). The last two bins are done in one stride: the distance is
  * convex, so what does not count is an interval. Outcomes are never listed.
  *
- * In: K whole counts; K shares in [0, 1], sum 1; maxWork, the most steps allowed (a million take
- * about a fifth of a second). Out: p in (0, 1] with its natural log; `tooLarge`; or
+ * In: K whole counts; K shares in [0, 1], sum 1; maxWork, the most steps allowed (ten
+ * million take under a second). Out: p in (0, 1] with its natural log; `tooLarge`; or
  * `impossible` with p 0 when a share of 0 has events. A share of 0 without events is left out;
  * without events p is 1. Refuses other input with RangeError. Measured against exact fractions
  * (test/published/exact.py): 1e-12 relatively. Valid only without overdispersion.
- * Memory: 16 bytes a partial outcome and 40 (n + 1) a category.
+ * Memory: 40 (n + 1) bytes a category, and some 40 a partial outcome (fewer than the steps).
  */
 export function exactMultinomial(input: {
   readonly counts: readonly number[];
@@ -82,7 +82,7 @@ export function exactMultinomial(input: {
   const counted = emptyLogSum();
   const walk: Walk = { stages, limit: observed - tie, grid, maxWork, counted, work };
   if (!follow(walk, events)) return { tooLarge: true, work: walk.work };
-  const logP = Math.min(0, logOfSum(counted) - logPoisson(events, events));
+  const logP = Math.min(0, logOfSum(counted) - logPoissonMass(events, events));
   return { p: Math.exp(logP), logP };
 }
 

@@ -1,5 +1,5 @@
 import { devianceTerm } from './devianceTerm.js';
-import { logPoisson } from './logPoisson.js';
+import { logPoissonMass } from './logPoissonMass.js';
 
 /** How far a multinomial outcome lies from its shares: what "at least as extreme" means. */
 export type MultinomialOrder = 'probability' | 'pearson' | 'likelihood-ratio';
@@ -18,7 +18,7 @@ export interface MultinomialStage {
 }
 
 const distances: Readonly<Record<MultinomialOrder, (x: number, mean: number) => number>> = {
-  probability: (x, mean) => -logPoisson(x, mean),
+  probability: (x, mean) => -logPoissonMass(x, mean),
   pearson: (x, mean) => (x - mean) ** 2 / mean,
   'likelihood-ratio': (x, mean) => 2 * devianceTerm(x, mean),
 };
@@ -55,8 +55,8 @@ export function multinomialStages(
     });
     const least = later === undefined ? cost : mergeIncrements(cost, later.least);
     const rest = events * tail;
-    const whole = table((r) => logPoisson(r, rest));
-    stages.push({ cost, log: table((x) => logPoisson(x, mean)), least, most, whole });
+    const whole = table((r) => logPoissonMass(r, rest));
+    stages.push({ cost, log: table((x) => logPoissonMass(x, mean)), least, most, whole });
   }
   return stages.reverse();
 }

@@ -34,9 +34,9 @@ export const SHIRYAEV_ROBERTS_START: ShiryaevRobertsState = { logR: [] };
  *
  * In: the state before, the alternatives it was begun with, the window's counts by category, rho
  * in [0, 1). A window without events changes nothing. Out: the state after, log D and the
- * leading alternative; compare log D with log(c) of `creepThreshold`, and start anew after an alarm.
- * Without an alternative log D stays -Infinity. Refuses counts that lack a category, negative
- * cells and a state of other length with RangeError.
+ * leading alternative; compare log D with log(c) of `creepThreshold`, and start anew after an
+ * alarm. Without an alternative log D stays -Infinity. Refuses counts that lack a category,
+ * negative cells, and a state of other length or with a cell that is no number, with RangeError.
  * Source: Shiryaev (1963), Roberts (1966), Pollak (1987), Lorden (1971) for the bound, from
  * memory; e-detectors: Shin, Ramdas & Rinaldo (2022, abstract); guard own.
  * Check values of the design to all their digits. Cost: one ratio an alternative.
@@ -49,7 +49,7 @@ export function shiryaevRoberts(input: {
 }): ShiryaevRobertsStep {
   const { state, alternatives, counts, rho } = input;
   requireCounts('counts', counts);
-  if (state.logR.length > 0) requireLength('state.logR', state.logR, alternatives.length);
+  requireState(state, alternatives.length);
   const events = sum(counts);
   if (events === 0 || alternatives.length === 0) return describe(state);
   const logR = alternatives.map(({ category, p0, p1 }, j) => {
@@ -62,6 +62,15 @@ export function shiryaevRoberts(input: {
     return log1pexp(state.logR[j] ?? -Infinity) + cut;
   });
   return describe({ logR });
+}
+
+function requireState({ logR }: ShiryaevRobertsState, length: number): void {
+  if (logR.length > 0) requireLength('state.logR', logR, length);
+  logR.forEach((log, j) => {
+    if (!(log < Infinity)) {
+      throw new RangeError(`state.logR[${j}]: must be a number below Infinity, got ${log}`);
+    }
+  });
 }
 
 function describe(state: ShiryaevRobertsState): ShiryaevRobertsStep {

@@ -1,7 +1,6 @@
 import { chiSquaredUpperQuantile } from './chiSquaredUpperQuantile.js';
 import { fUpperQuantile } from './fUpperQuantile.js';
 import { likelihoodRatio } from './likelihoodRatio.js';
-import { median } from './median.js';
 import { pairDeviance } from './pairDeviance.js';
 import { requireTable } from './preconditions.js';
 import { sum } from './sum.js';
@@ -40,10 +39,11 @@ export interface TooSparse {
  * (B-1)(K-1); phi_s = trimmed mean over successive pairs of their own G2/(K-1), starting at
  * median(g)/(median of chi-squared on K-1 over K-1) and three times keeping those at most
  * F_.05/H(K-1, .6 H (K-1)) times it. rho = (phi - 1)/(n0 - 1), n0 = (M - sum N^2/M)/(B-1) the
- * usual mean size of unequal groups (N itself when equal). V = phi_s'/phi_b, where
- * phi_s' = 1 + (n0_b - 1) rho_s carries phi_s to the sizes of the baseline (phi_s itself when N is
- * equal). Nothing is floored. Independent windows: mean 1, sd 1/sqrt(B (K-1)); flagged under
- * 1 - 3 sd. Windows without any scatter have V = 1.
+ * usual mean size of unequal groups (N itself when equal). V = phi_s/phi_b'; with equal N phi_b'
+ * is phi_b, else 1 + (phi_b - 1) min(1, (n0_s - 1)/(n0_b - 1)) carries it to the smaller sizes of
+ * pairs, without which uneven traffic alone would look like wander. No phi is floored at 1.
+ * Independent windows: mean 1, sd 1/sqrt(B (K-1)); flagged under 1 - 3 sd. Windows without any
+ * scatter have V = 1.
  *
  * In: an anchor's windows in time order, each of K counts; one that is left out is given without
  * events, so that its neighbours are no pair. Never those of a rolling baseline: a real creep
@@ -64,17 +64,70 @@ export function wander(windows: readonly (readonly number[])[]): Wander | TooSpa
   const phiBaseline = likelihoodRatio(filled).statistic / ((b - 1) * df1);
   const { phi: phiSuccessive, size } = trimmedMean(pairs, df1);
   const sizeBaseline = meanSize(filled.map(sum));
-  const rhoBaseline = correlation(phiBaseline, sizeBaseline);
-  const rhoSuccessive = correlation(phiSuccessive, size);
-  const carried = size === sizeBaseline ? phiSuccessive : 1 + (sizeBaseline - 1) * rhoSuccessive;
-  const v = phiBaseline > 0 ? carried / phiBaseline : 1;
+  const scale = sizeBaseline > 1 ? Math.min(1, (size - 1) / (sizeBaseline - 1)) : 1;
+  const carried = 1 + (phiBaseline - 1) * scale;
+  const v = carried > 0 ? phiSuccessive / carried : 1;
   const sd = 1 / Math.sqrt(b * df1);
-  const wanders = v < 1 - FLAG * sd;
-  return { v, sd, wanders, phiBaseline, phiSuccessive, rhoBaseline, rhoSuccessive };
+  return {
+    v,
+    sd,
+    wanders: v < 1 - FLAG * sd,
+    phiBaseline,
+    phiSuccessive,
+    rhoBaseline: correlation(phiBaseline, sizeBaseline),
+    rhoSuccessive: correlation(phiSuccessive, size),
+  };
 }
 
 interface Pair {
   /** G2/(K-1) of the two windows. */
   readonly phi: number;
   readonly size: number;
+}
+
+function successivePairs(windows: readonly (readonly number[])[], df1: number): Pair[] {
+  return windows.slice(1).flatMap((after, i) => {
+    const before = windows[i] ?? [];
+    const [n, m] = [sum(after), sum(before)];
+    if (n === 0 || m === 0) return [];
+    const g = pairDeviance({
+      now: after.map((x) => x / n),
+      weightNow: n,
+      reference: before.map((x) => x / m),
+      weightReference: m,
+    });
+    return [{ phi: g / df1, size: meanSize([n, m]) }];
+  });
+}
+
+function trimmedMean(pairs: readonly Pair[], df1: number): Pair {
+  const h = pairs.length;
+  const bound = fUpperQuantile(TRIM_LEVEL / h, df1, 0.6 * h * df1);
+  const middle = chiSquaredUpperQuantile(0.5, df1) / df1;
+  let phi = median(pairs.map((pair) => pair.phi)) / middle;
+  let kept = pairs;
+  for (let trim = 0; trim < TRIMS; trim += 1) {
+    const limit = bound * phi;
+    kept = pairs.filter((pair) => pair.phi <= limit);
+    phi = sum(kept.map((pair) => pair.phi)) / kept.length;
+  }
+  return { phi, size: sum(kept.map((pair) => pair.size)) / kept.length };
+}
+
+function median(values: readonly number[]): number {
+  const sorted = [...values].sort((a, b) => a - b);
+  const at = (index: number): number => sorted[index] ?? 0;
+  const half = Math.floor(sorted.length / 2);
+  return sorted.length % 2 === 1 ? at(half) : (at(half - 1) + at(half)) / 2;
+}
+
+/** (M - sum N^2/M)/(B - 1): the size at which equal windows would show the same phi. */
+function meanSize(events: readonly number[]): number {
+  const total = sum(events);
+  const squares = sum(events.map((n) => n * n));
+  return (total - squares / total) / (events.length - 1);
+}
+
+function correlation(phi: number, size: number): number {
+  return size > 1 ? (phi - 1) / (size - 1) : 0;
 }
