@@ -1,16 +1,10 @@
 import { designWeight } from '../stats/designWeight.js';
-import { tUpperQuantile } from '../stats/tUpperQuantile.js';
+import { returnBounds } from '../stats/returnBounds.js';
 import type { Alarm, Carriers } from '../terms/recipe.js';
 import type { Counts } from '../terms/tally.js';
 
 /** Lengths, in windows, over which a return is looked for. */
 export const RETURN_LENGTHS = [3, 6, 12, 24] as const;
-
-/** Repeated looks ask for a strict quantile. */
-const RETURN_ERROR = 0.001;
-
-/** What remains of the shift must be under this part of what it was. */
-const REMAINDER = 1 / 3;
 
 /**
  * Whether the mix has come back, from the windows after the raise in time order (thin and silent
@@ -34,41 +28,23 @@ interface Pool {
   readonly share: number;
 }
 
-/** The rule itself, on pooled windows: exported for its published check values. */
+/** The rule itself, on pooled windows. */
 export function isBack(alarm: Alarm, pool: Pool): boolean {
   if (pool.weight <= 0) return false;
-  const bounds = returnBounds(alarm, pool);
+  const { before, now } = alarm.carriers;
+  const reference = share(before);
+  const bounds = returnBounds({
+    raise: { share: share(now), weight: alarm.weightNow, reference },
+    since: { share: share(pool.share), weight: pool.weight, reference },
+    weightReference: alarm.weightReference ?? Infinity,
+    df2: alarm.df2 ?? Infinity,
+  });
   return bounds.remainder < bounds.allowed || bounds.distance < alarm.tolerance;
 }
 
-/** Upper bounds of what is left of the shift, by both forms of the rule, and a third of it. */
-export function returnBounds(
-  alarm: Alarm,
-  pool: Pool,
-): { readonly remainder: number; readonly distance: number; readonly allowed: number } {
-  const { before, now } = alarm.carriers;
-  const sign = now >= before ? 1 : -1;
-  const first = Math.abs(now - before);
-  const left = sign * (pool.share - before);
-  const w = alarm.weightReference;
-  const t = tUpperQuantile(RETURN_ERROR, alarm.df2 ?? Infinity);
-  const p = mean(pool.share, pool.weight, before, w);
-  const p0 = mean(now, alarm.weightNow, before, w);
-  const perReference = w === null ? 0 : 1 / w;
-  const spread = p * (1 - p);
-  const variance =
-    spread / pool.weight +
-    (p0 * (1 - p0)) / (9 * alarm.weightNow) +
-    ((4 * spread) / 9) * perReference;
-  return {
-    remainder: left + t * Math.sqrt(variance),
-    distance: left + t * Math.sqrt(spread * (1 / pool.weight + perReference)),
-    allowed: first * REMAINDER,
-  };
-}
-
-function mean(share: number, weight: number, before: number, reference: number | null): number {
-  return reference === null ? before : (weight * share + reference * before) / (weight + reference);
+/** Sums of shares may end a rounding error above 1. */
+function share(sum: number): number {
+  return Math.min(1, sum);
 }
 
 function poolWindows(alarm: Alarm, windows: readonly Counts[]): Pool {

@@ -65,11 +65,8 @@ function testOf(options: WeighOptions): Parameters<typeof weighSamples>[0]['test
 /** An option that would have no effect is a misunderstanding, and told. */
 function refuseIdleOptions(options: WeighOptions): void {
   const given = options.exact === true || options.monteCarlo !== undefined;
-  if (given && options.declared === true) {
-    throw new CommandError(
-      '--exact and --monte-carlo need two samples; leave out --declared',
-      EXIT.usage,
-    );
+  if (options.monteCarlo !== undefined && options.declared === true) {
+    throw new CommandError('--monte-carlo needs two samples; leave out --declared', EXIT.usage);
   }
   if (given && options.window !== undefined) {
     throw new CommandError(

@@ -6,12 +6,13 @@ const LISTED = 20;
 
 /** A comparison in words, the table's movers below. */
 export function weighText(comparison: Comparison): string {
-  const { moved, movers, pooled } = comparison;
+  const { moved, movers, pooled, trend } = comparison;
   const more = movers.length - LISTED;
   return [
     `${percent(moved.estimate)} of events moved to another category ` +
       `(at least ${percent(moved.atLeast)}, at most ${percent(moved.atMost)})`,
     `by chance alone: ${chance(comparison.logP)} (${methodText(comparison)})`,
+    ...(trend === undefined ? [] : [`along the order: ${chance(trend.logP)}`]),
     ...movers.slice(0, LISTED).map(moverLine),
     ...(more > 0 ? [`  and ${grouped(more)} more`] : []),
     ...(pooled.length > 0 ? [`together in (pooled): ${pooled.join(', ')}`] : []),

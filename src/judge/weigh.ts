@@ -1,9 +1,11 @@
+import { exactMultinomial } from '../stats/exactMultinomial.js';
 import { exactTable } from '../stats/exactTable.js';
+import { linearByLinear } from '../stats/linearByLinear.js';
 import { monteCarloTable } from '../stats/monteCarloTable.js';
-import type { Comparison, Method } from '../terms/evidence.js';
+import type { ChiSquaredResult, Comparison, Method } from '../terms/evidence.js';
 import type { Counts } from '../terms/tally.js';
 import { type Bins, binCounts, binsByMargins, binsByShares } from './bins.js';
-import { type Description, describe, sharesOf } from './compare.js';
+import { type Description, describe, sharesOf, type Sides } from './compare.js';
 import { compareWindow } from './judgeWindow.js';
 import { total } from './counts.js';
 import { baselineReference, type WindowCounts } from './reference.js';
@@ -48,20 +50,38 @@ function againstShares(input: WeighInput): Comparison {
   for (const category of input.after.keys()) if (!shares.has(category)) shares.set(category, 0);
   const options = optionsOf(input);
   const pooled = binsByShares(input.after, shares, options);
-  const few = pooled.names.length < 2;
-  const bins = few ? binsByShares(input.after, shares, { ...options, pooling: false }) : pooled;
+  const isExact = input.test === 'exact' || pooled.names.length < 2;
+  const bins = isExact ? binsByShares(input.after, shares, { ...options, pooling: false }) : pooled;
   const now = binCounts(input.after, bins);
+  const binShares = bins.members.map((bin) =>
+    bin.reduce((sum, category) => sum + (shares.get(category) ?? 0), 0),
+  );
   const { description } = describe({
     bins,
     now,
     before: null,
     shareOf: sharesOf(shares, input.after, bins),
-    shares: bins.members.map((bin) => bin.reduce((sum, c) => sum + (shares.get(c) ?? 0), 0)),
+    shares: binShares,
     weightNow: total(input.after),
     weightReference: Infinity,
     df2: Infinity,
   });
+  const exact = isExact ? exactFit(description, now, binShares) : null;
+  if (exact !== null) return exact;
+  if (input.test === 'exact') {
+    throw new RangeError('too many events for an exact p against shares; leave --exact out');
+  }
   return chiSquared('goodness-of-fit', description);
+}
+
+/** p of the counts given the shares, over all ways the events could fall; null if too much work. */
+function exactFit(
+  found: Description,
+  counts: readonly number[],
+  shares: readonly number[],
+): Comparison | null {
+  const exact = exactMultinomial({ counts, shares, maxWork: MOST_WORK, order: 'pearson' });
+  return 'p' in exact ? { method: 'exact', ...NO_STATISTIC, ...pOf(exact), ...found } : null;
 }
 
 function withDispersion(input: WeighInput, windows: readonly WindowCounts[]): Comparison {
@@ -85,10 +105,13 @@ function asTable(input: WeighInput): Comparison {
   const wanted = input.test === 'auto' && pooled.names.length >= 2 ? null : input.test;
   const bins = wanted === null ? pooled : separate;
   const { description } = describe(plainSides(input, bins));
-  return wanted === null ? chiSquared('pearson', description) : conditional(description, wanted);
+  const compared =
+    wanted === null ? chiSquared('pearson', description) : conditional(description, wanted);
+  if (input.ordered === null) return compared;
+  return { ...compared, trend: trendOf(plainSides(input, separate)) };
 }
 
-function plainSides(input: WeighInput, bins: Bins): Parameters<typeof describe>[0] {
+function plainSides(input: WeighInput, bins: Bins): Sides {
   const before = binCounts(input.before, bins);
   const whole = before.reduce((a, b) => a + b, 0);
   return {
@@ -101,6 +124,12 @@ function plainSides(input: WeighInput, bins: Bins): Parameters<typeof describe>[
     weightReference: whole,
     df2: Infinity,
   };
+}
+
+/** Whether the mix slid one way along its order: linear-by-linear association (Agresti 2002). */
+function trendOf({ before, now }: Pick<Sides, 'before' | 'now'>): ChiSquaredResult {
+  const { statistic, df, p, logP } = linearByLinear({ table: [before ?? [], now] });
+  return { statistic, df, p, logP };
 }
 
 function chiSquared(method: Method, found: Description): Comparison {

@@ -62,6 +62,8 @@ export interface Comparison {
   readonly cramersV: number;
   readonly cohensW: number;
   readonly movers: readonly Mover[];
+  /** Linear trend along the order of ordinal categories; only where an order was given. */
+  readonly trend?: ChiSquaredResult;
 }
 
 /** What the window was held against, in words and numbers anyone can look up again. */

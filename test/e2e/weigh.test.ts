@@ -341,9 +341,9 @@ const usage: readonly (readonly [what: string, args: readonly string[], says: Re
     /exclude each other; give one/,
   ],
   [
-    'an exact p is asked for against declared shares',
-    ['before.csv', 'after.csv', '--declared', '--exact'],
-    /need two samples; leave out --declared/,
+    'sampled tables are asked for against declared shares',
+    ['before.csv', 'after.csv', '--declared', '--monte-carlo', '999', '--seed', '1'],
+    /needs two samples; leave out --declared/,
   ],
   [
     'an exact p is asked for with windows',

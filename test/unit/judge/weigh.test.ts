@@ -61,6 +61,33 @@ describe('two samples weighed by hand', () => {
     expect(found).toMatchObject({ statistic: null, df: null });
   });
 
+  it('an exact p against declared shares is that printed for peas', () => {
+    const peas = lettered([315, 108, 101, 32]);
+    const found = weigh(
+      input({ before: lettered([9, 3, 3, 1]), after: peas, declared: true, test: 'exact' }),
+    );
+    // mendel-peas in published.json: 28,956,759 ways to fall, p by chi-squared order .9272.
+    expect(found.method).toBe('exact');
+    expect(found.p).toBeCloseTo(0.9272, 4);
+  });
+
+  it('an exact p against declared shares that is too much work is refused', () => {
+    const many = lettered(Array.from({ length: 30 }, (_, k) => 100_000 + k));
+    const asked = input({ before: many, after: many, declared: true, test: 'exact' });
+    expect(() => weigh(asked)).toThrow(
+      new RangeError('too many events for an exact p against shares; leave --exact out'),
+    );
+  });
+
+  it('ordered categories have a trend, others none', () => {
+    const two = { before: countsOf({ a: 30, b: 10 }), after: countsOf({ a: 20, b: 20 }) };
+    const found = weigh(input({ ...two, ordered: ['a', 'b'] }));
+    // Closed form: with two categories the trend is X2 (n - 1) / n.
+    expect(found.trend?.df).toBe(1);
+    expect(found.trend?.statistic).toBeCloseTo((found.pearson.statistic * 79) / 80, 12);
+    expect(weigh(input(two)).trend).toBeUndefined();
+  });
+
   it('where pooling leaves one bin the p is exact without being asked for', () => {
     const found = weigh(
       input({ before: countsOf({ a: 8, b: 1 }), after: countsOf({ a: 1, b: 8 }) }),
