@@ -1,5 +1,7 @@
 /** Numbers as people read them: shares in percent, differences in points, p as odds. */
 
+const LOG_BILLIONTH = Math.log(1e-9);
+
 /** A share 0..1 in percent: one decimal, or one significant digit below one percent. */
 export function percent(share: number): string {
   return `${digits(Math.abs(share) * 100)} %`;
@@ -13,16 +15,16 @@ export function points(difference: number): string {
 }
 
 /**
- * How often chance alone would show as much, from a natural log of p: "once in 4,000 windows".
- * Never says "never".
+ * How often chance alone would show as much, from a natural log of p: "about once in 4,000
+ * windows", or "7 times in 10". Never says "never".
  */
-export function chance(logP: number): string {
-  const exponent = -logP / Math.LN10;
-  if (exponent >= 9) return 'less than once in a billion windows';
-  const times = Math.max(1, Math.exp(-logP));
-  if (times < 10) return `about once in ${times.toFixed(0)} windows`;
+export function chance(logP: number, noun = 'windows'): string {
+  if (logP <= LOG_BILLIONTH) return `less than once in a billion ${noun}`;
+  const p = Math.exp(logP);
+  if (p >= 0.15) return `${Math.min(9, Math.round(p * 10)).toFixed(0)} times in 10`;
+  const times = 1 / p;
   const scale = 10 ** Math.floor(Math.log10(times));
-  return `about once in ${grouped(Math.round(times / scale) * scale)} windows`;
+  return `about once in ${grouped(Math.round(times / scale) * scale)} ${noun}`;
 }
 
 /** `1 window`, `2,016 windows`: for nouns whose plural takes an s. */

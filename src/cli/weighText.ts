@@ -11,11 +11,13 @@ export function weighText(comparison: Comparison): string {
   return [
     `${percent(moved.estimate)} of events moved to another category ` +
       `(at least ${percent(moved.atLeast)}, at most ${percent(moved.atMost)})`,
-    `by chance alone: ${chance(comparison.logP)} (${methodText(comparison)})`,
-    ...(trend === undefined ? [] : [`along the order: ${chance(trend.logP)}`]),
+    `by chance alone: ${chance(comparison.logP, 'comparisons')} (${methodText(comparison)})`,
+    ...(trend === undefined
+      ? []
+      : [`a trend along the order, by chance alone: ${chance(trend.logP, 'comparisons')}`]),
     ...movers.slice(0, LISTED).map(moverLine),
     ...(more > 0 ? [`  and ${grouped(more)} more`] : []),
-    ...(pooled.length > 0 ? [`together in (pooled): ${pooled.join(', ')}`] : []),
+    ...(pooled.length > 0 ? [`put together: ${pooled.join(', ')}`] : []),
   ].join('\n');
 }
 

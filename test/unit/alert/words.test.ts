@@ -32,7 +32,9 @@ describe('numbers in words', () => {
   });
 
   it.each([
-    [Math.log(0.5), 'about once in 2 windows'],
+    [0, '9 times in 10'],
+    [Math.log(0.5), '5 times in 10'],
+    [Math.log(0.1), 'about once in 10 windows'],
     [Math.log(1 / 4321), 'about once in 4,000 windows'],
     [Math.log(1 / 960_000), 'about once in 1,000,000 windows'],
     [-9 * Math.LN10, 'less than once in a billion windows'],
