@@ -40,7 +40,7 @@ export interface Alarm {
   readonly startMs: number;
   readonly endMs: number;
   readonly sinceEarliestMs: number;
-  /** The reference frozen at the raise; null where the yardstick is fixed. */
+  /** The reference frozen at the raise. */
   readonly recipe: Recipe;
   readonly carriers: Carriers;
   /** Effective events of the raising window and of the reference (null: infinite). */
