@@ -16,6 +16,7 @@ import { Journal } from './journal.js';
 import { breathe, type Ports, printLine } from './ports.js';
 import { progress, type Progress } from './progress.js';
 import { daemonSources } from './sources.js';
+import { Spending } from './spending.js';
 import { programVersion } from './version.js';
 
 export interface DaemonOptions {
@@ -31,6 +32,7 @@ interface Parts {
   readonly store: Store;
   readonly rounds: Rounds;
   readonly collectors: readonly Collector[];
+  readonly spending: Spending;
 }
 
 /** Puts collecting, judging, sending and telling together over one store. */
@@ -75,7 +77,8 @@ export class Daemon {
         rounds,
         stdin: ports.stdin,
       });
-      return new Daemon(options, { lock, store, rounds, collectors });
+      const spending = await Spending.load(config, store);
+      return new Daemon(options, { lock, store, rounds, collectors, spending });
     } catch (error) {
       lock.release();
       throw error;
@@ -88,7 +91,7 @@ export class Daemon {
       config: this.options.config,
       store: this.parts.store,
       collectors: this.parts.collectors,
-      clock: this.options.ports.clock,
+      spending: this.parts.spending,
       state: () => ({ lastRoundMs: this.lastRoundMs, caughtUp: this.caughtUp }),
     });
   }
@@ -176,6 +179,7 @@ export class Daemon {
 
   private onRound(round: RoundCommit, durationMs: number): void {
     this.metrics.observeRound(durationMs);
+    this.parts.spending.add(round.batch);
     this.lastRoundMs = this.options.ports.clock.nowMs();
     this.progress.end();
     this.journal.round(round);

@@ -1,21 +1,18 @@
-import type { Clock } from '../clock/clock.js';
 import type { Collector } from '../collect/collector.js';
 import type { Config } from '../config/types.js';
-import { planMixes } from '../schedule/plan.js';
 import type { ServerSources } from '../serve/server.js';
 import type { Store } from '../store/store.js';
-
-const WEEK_MS = 604_800_000;
+import type { Spending } from './spending.js';
 
 /** What the server shows of a running daemon, read from the store and its collectors. */
 export function daemonSources(parts: {
   readonly config: Config;
   readonly store: Store;
   readonly collectors: readonly Collector[];
-  readonly clock: Clock;
+  readonly spending: Pick<Spending, 'ratio'>;
   readonly state: () => { readonly lastRoundMs: number | null; readonly caughtUp: boolean };
 }): ServerSources {
-  const { config, store, collectors, state } = parts;
+  const { config, store, collectors, spending, state } = parts;
   return {
     metrics: async () => ({
       mixes: config.mixes.map((mix) => mix.name),
@@ -30,7 +27,7 @@ export function daemonSources(parts: {
         lagBytes: collector.lagBytes(),
       })),
       lastRoundMs: state().lastRoundMs,
-      budgetSpentRatio: await budgetSpent(config, store),
+      budgetSpentRatio: spending.ratio(),
       storeBytes: await store.bytes(),
     }),
     readiness: () => {
@@ -42,18 +39,4 @@ export function daemonSources(parts: {
       });
     },
   };
-}
-
-/** False alarms spent in the last judged week over those accepted. */
-async function budgetSpent(config: Config, store: Store): Promise<number | null> {
-  const judged = [...(await store.judgedTo()).values()];
-  if (judged.length === 0) return null;
-  const untilMs = Math.max(...judged);
-  let spent = 0;
-  for await (const batch of store.batches(untilMs - WEEK_MS)) {
-    spent += batch.families.reduce((sum, family) => sum + family.spent, 0);
-  }
-  const shares = new Set(planMixes(config).map((plan) => plan.share));
-  const accepted = [...shares].reduce((sum, share) => sum + share.perWeek, 0);
-  return spent / accepted;
 }

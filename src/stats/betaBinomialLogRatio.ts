@@ -11,7 +11,7 @@ import { stirlingError } from './stirlingError.js';
  * binomial without a seam, and no small difference of large log-gammas is taken.
  *
  * In: y of N events (0 <= y <= N, real), shares p0 and p1 strictly between 0 and 1, rho in
- * [0, 1). Out: any number; 0 when p1 = p0. Refuses other input with RangeError.
+ * [0, 1). Out: a real number; 0 when p1 = p0. Refuses other input with RangeError.
  * Source: Skellam (1948, from memory) for the distribution; the arrangement is own.
  * Measured against 50 digits at 700 points, N 1 to 1e6, rho 0 to .5
  * (test/published/sequential.py): error at most 1e-14 x N. Cost: some 30 logarithms.

@@ -8,7 +8,7 @@ const LOG_TWO_PI = Math.log(2 * Math.PI);
  * failures, both real.
  *
  * In: x >= 0, y >= 0, finite; p and q strictly between 0 and 1 with p + q = 1. Both are taken,
- * because the smaller one cannot be had from the larger without loss. Out: any number <= 0 up to
+ * because the smaller one cannot be had from the larger without loss. Out: a real number <= 0 up to
  * rounding.
  * Written as deviances from x + y times p and q (Loader 2000, "Fast and accurate computation of
  * binomial probabilities", from memory). Cost: constant.

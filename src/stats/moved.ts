@@ -1,12 +1,7 @@
 import { fUpperQuantile } from './fUpperQuantile.js';
-import { jointShares } from './pairDeviance.js';
+import { jointShares, requireWeightedPair } from './pairDeviance.js';
 import type { WeightedPair } from './pairDeviance.js';
-import {
-  requireLength,
-  requirePositive,
-  requirePositiveOrInfinite,
-  requireShares,
-} from './preconditions.js';
+import { requirePositiveOrInfinite } from './preconditions.js';
 import { requirePooledIndex } from './requirePooledIndex.js';
 import { normalLogSf } from './normalLogSf.js';
 import { tUpperQuantile } from './tUpperQuantile.js';
@@ -71,11 +66,7 @@ export function moved(
 function check(
   input: WeightedPair & { readonly df2: number; readonly pooledIndex: number | null },
 ): void {
-  requireLength('reference', input.reference, input.now.length);
-  requireShares('now', input.now);
-  requireShares('reference', input.reference);
-  requirePositive('weightNow', input.weightNow);
-  requirePositiveOrInfinite('weightReference', input.weightReference);
+  requireWeightedPair(input);
   requirePositiveOrInfinite('df2', input.df2);
   requirePooledIndex(input.pooledIndex, input.now.length);
 }

@@ -1,4 +1,10 @@
 import { devianceTerm } from './devianceTerm.js';
+import {
+  requireLength,
+  requirePositive,
+  requirePositiveOrInfinite,
+  requireShares,
+} from './preconditions.js';
 
 /** Two sets of shares with the effective events behind each. */
 export interface WeightedPair {
@@ -7,6 +13,15 @@ export interface WeightedPair {
   readonly reference: readonly number[];
   /** Infinity for shares that were declared, not sampled. */
   readonly weightReference: number;
+}
+
+/** Refuses a pair whose shares or weights cannot be, with RangeError. */
+export function requireWeightedPair(pair: WeightedPair): void {
+  requireLength('reference', pair.reference, pair.now.length);
+  requireShares('now', pair.now);
+  requireShares('reference', pair.reference);
+  requirePositive('weightNow', pair.weightNow);
+  requirePositiveOrInfinite('weightReference', pair.weightReference);
 }
 
 /** (w q + W p)/(w + W), bin by bin; p itself when W is infinite. */

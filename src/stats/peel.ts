@@ -1,12 +1,7 @@
 import { fLogSf } from './fLogSf.js';
-import { pairDeviance } from './pairDeviance.js';
+import { pairDeviance, requireWeightedPair } from './pairDeviance.js';
 import type { WeightedPair } from './pairDeviance.js';
-import {
-  requireLength,
-  requirePositive,
-  requirePositiveOrInfinite,
-  requireShares,
-} from './preconditions.js';
+import { requirePositiveOrInfinite } from './preconditions.js';
 
 const LOG_STOP = Math.log(0.05);
 
@@ -61,11 +56,7 @@ export function peel(input: WeightedPair & { readonly df2: number }): Peeled {
 }
 
 function check(input: WeightedPair & { readonly df2: number }): void {
-  requireLength('reference', input.reference, input.now.length);
-  requireShares('now', input.now);
-  requireShares('reference', input.reference);
-  requirePositive('weightNow', input.weightNow);
-  requirePositiveOrInfinite('weightReference', input.weightReference);
+  requireWeightedPair(input);
   requirePositiveOrInfinite('df2', input.df2);
 }
 

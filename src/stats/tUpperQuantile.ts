@@ -8,7 +8,7 @@ import { tLogSf } from './tLogSf.js';
 /**
  * Critical value of Student's t: the t with P(T > t) = alpha.
  *
- * In: alpha strictly between 0 and 1, df real > 0 or Infinity (then the normal). Out: any
+ * In: alpha strictly between 0 and 1, df real > 0 or Infinity (then the normal). Out: a
  * number; 0 at alpha = 1/2. Refuses anything else with RangeError. jstat's inverse is the first
  * guess where it is good; the root is found on `tLogSf`.
  * Measured by the tail at the answer: log P is log(alpha) within 1e-13 x max(1, |log alpha|).
